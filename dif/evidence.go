@@ -3,6 +3,7 @@ package dif
 import (
 	"bytes"
 	"encoding/json"
+	"errors"
 	"fmt"
 	"math"
 )
@@ -203,27 +204,32 @@ type Finding struct {
 	Results        Results // by method, in report order
 	Classification Classification
 	Warnings       []Warning
+	FindingExtras
 }
 
 // FindingCounts are the sample sizes and plain item statistics of a finding.
 // NReference and NFocal have a label, a matching score and a scored response; the
 // matched ones stand in strata that hold both groups.
 type FindingCounts struct {
-	Item               string           `json:"item"`
-	Version            string           `json:"version"`
-	NReference         int              `json:"n_reference"`
-	NFocal             int              `json:"n_focal"`
-	NMatchedReference  int              `json:"n_matched_reference"`
-	NMatchedFocal      int              `json:"n_matched_focal"`
-	StrataUsed         int              `json:"strata_used"`
-	StrataInformative  int              `json:"strata_informative"`
-	PReference         *float64         `json:"p_reference"` // mean score / maximum score
-	PFocal             *float64         `json:"p_focal"`
-	ItemRest           ItemRest         `json:"item_rest_correlation"`
-	Strata             []StratumSummary `json:"strata"`
-	NInformative       int              `json:"n_informative"`        // candidates in informative strata, both groups
-	DeltaDifficulty    *float64         `json:"difficulty_reference"` // normal delta 13 + 4z of the reference group
-	DeltaDifficultyFoc *float64         `json:"difficulty_focal"`
+	Item              string           `json:"item"`
+	Version           string           `json:"version"`
+	NReference        int              `json:"n_reference"`
+	NFocal            int              `json:"n_focal"`
+	NMatchedReference int              `json:"n_matched_reference"`
+	NMatchedFocal     int              `json:"n_matched_focal"`
+	StrataUsed        int              `json:"strata_used"`
+	StrataInformative int              `json:"strata_informative"`
+	PReference        *float64         `json:"p_reference"` // mean score / maximum score
+	PFocal            *float64         `json:"p_focal"`
+	ItemRest          ItemRest         `json:"item_rest_correlation"`
+	Strata            []StratumSummary `json:"strata"`
+}
+
+// FindingExtras are further plain statistics, written after the named keys of a finding.
+type FindingExtras struct {
+	NInformative        int      `json:"n_informative"`        // candidates in informative strata, both groups
+	DifficultyReference *float64 `json:"difficulty_reference"` // normal delta 13 + 4z of a binary item
+	DifficultyFocal     *float64 `json:"difficulty_focal"`
 }
 
 // ItemRest holds Pearson correlations of the item with the stage-1 score less the item.
@@ -290,8 +296,8 @@ func (f *Finding) Standardization() *StandardizationResult {
 	return r
 }
 
-// MarshalJSON writes the finding as one object: counts, a key per method, then
-// classification and warnings.
+// MarshalJSON writes the finding as one object: counts, a key per method,
+// classification, warnings, then the extras.
 func (f Finding) MarshalJSON() ([]byte, error) {
 	head, err := json.Marshal(f.FindingCounts)
 	if err != nil {
@@ -317,13 +323,18 @@ func (f Finding) MarshalJSON() ([]byte, error) {
 	if err := part("warnings", f.Warnings); err != nil {
 		return nil, err
 	}
-	b.WriteByte('}')
+	tail, err := json.Marshal(f.FindingExtras)
+	if err != nil {
+		return nil, err
+	}
+	b.WriteByte(',')
+	b.Write(tail[1:])
 	return b.Bytes(), nil
 }
 
 // UnmarshalJSON reads a finding; a key of no known method is an error.
 func (f *Finding) UnmarshalJSON(data []byte) error {
-	if err := json.Unmarshal(data, &f.FindingCounts); err != nil {
+	if err := errors.Join(json.Unmarshal(data, &f.FindingCounts), json.Unmarshal(data, &f.FindingExtras)); err != nil {
 		return err
 	}
 	var keys map[string]json.RawMessage
@@ -347,18 +358,23 @@ func (f *Finding) UnmarshalJSON(data []byte) error {
 	if err := json.Unmarshal(keys["warnings"], &f.Warnings); err != nil {
 		return fmt.Errorf("warnings: %w", err)
 	}
-	var head map[string]json.RawMessage
-	j, err := json.Marshal(f.FindingCounts)
-	if err != nil {
-		return err
-	}
-	if err := json.Unmarshal(j, &head); err != nil {
-		return err
-	}
-	for key := range keys {
-		if _, known := head[key]; !known && key != "classification" && key != "warnings" {
-			return fmt.Errorf("unknown key %q", key)
+	for _, part := range []any{f.FindingCounts, f.FindingExtras} {
+		j, err := json.Marshal(part)
+		if err != nil {
+			return err
 		}
+		var named map[string]json.RawMessage
+		if err := json.Unmarshal(j, &named); err != nil {
+			return err
+		}
+		for key := range named {
+			delete(keys, key)
+		}
+	}
+	delete(keys, "classification")
+	delete(keys, "warnings")
+	for key := range keys {
+		return fmt.Errorf("unknown key %q", key)
 	}
 	return nil
 }
@@ -408,3 +424,20 @@ func number(x float64) *float64 {
 }
 
 func text(s string) *string { return &s }
+
+// FitFailed reports whether a fit failed somewhere: an item not converged, separated or
+// with a singular information matrix.
+func (e *Evidence) FitFailed() bool {
+	for i := range e.Comparisons {
+		for j := range e.Comparisons[i].Items {
+			k := &e.Comparisons[i].Items[j].Classification
+			if k.Reason != nil && *k.Reason == ReasonNotConverged {
+				return true
+			}
+			if k.Detail != nil && (*k.Detail == "separation" || *k.Detail == "singular_information") {
+				return true
+			}
+		}
+	}
+	return false
+}

@@ -47,7 +47,7 @@ func (k *comparing) finding(f *Finding, i int, t *ItemTable, c *coverage) {
 	p := [2]float64{ratio(c.scoreSum[0], c.n[0]*points), ratio(c.scoreSum[1], c.n[1]*points)}
 	f.PReference, f.PFocal = number(p[0]), number(p[1])
 	if t.Binary() {
-		f.DeltaDifficulty, f.DeltaDifficultyFoc = number(normalDelta(p[0])), number(normalDelta(p[1]))
+		f.DifficultyReference, f.DifficultyFocal = number(normalDelta(p[0])), number(normalDelta(p[1]))
 	}
 	f.Strata = t.summaries(c.comparable)
 	f.Results = Results{}

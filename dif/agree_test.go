@@ -1,0 +1,64 @@
+package dif
+
+import (
+	"strings"
+	"testing"
+)
+
+// Evidence of the engine agrees with itself, and every kind of tampering is named.
+func TestDisagreements(t *testing.T) {
+	t.Parallel()
+	fresh := func() *Evidence { return mustRun(t, openPlan("gender", "F", "M", PurifyTwoStage), verbalBinary(t)) }
+	if d := fresh().Disagreements(); len(d) > 0 {
+		t.Fatalf("untouched evidence: %v", d)
+	}
+	mixed := openPlan("g", "a", "b", PurifyTwoStage)
+	for _, variable := range []string{MatchAuto, MatchTotal, MatchTotalWithinForm, MatchExternal} {
+		mixed.Matching.Variable = variable
+		e, err := Run(t.Context(), mixed, mixedData(4, 5000, 12), Options{})
+		if err != nil {
+			t.Fatal(err)
+		}
+		if d := e.Disagreements(); len(d) > 0 {
+			t.Errorf("untouched evidence matched by %s: %v", variable, d)
+		}
+	}
+	for _, c := range []struct {
+		name   string
+		change func(c *Comparison)
+		want   string
+	}{
+		{"class", func(c *Comparison) { c.Items[0].Classification.Class = text(ClassBMinus) }, "class"},
+		{"computed class", func(c *Comparison) { c.Items[5].Classification.ComputedClass = text(ClassA) }, "computed class"},
+		{"delta", func(c *Comparison) { *c.Items[5].MantelHaenszel().Delta *= 1.0001 }, "mantel_haenszel"},
+		{"chi-square", func(c *Comparison) { *c.Items[5].MantelHaenszel().ChiSquare += 1e-6 }, "mantel_haenszel"},
+		{"trend", func(c *Comparison) { *c.Items[5].BreslowDay().Trend.Statistic += 1e-6 }, "breslow_day"},
+		{"P-DIF", func(c *Comparison) { *c.Items[5].Standardization().PDif += 1e-6 }, "standardization"},
+		{"q", func(c *Comparison) { *c.Items[5].MantelHaenszel().QValue /= 2 }, "q-value"},
+		{"stratum", func(c *Comparison) { c.Items[5].Strata[3].NFocal++ }, "strata"},
+		{"stratum mean", func(c *Comparison) { c.Items[5].Strata[3].MeanFocal = 0.123456 }, "mean"},
+		{"matched", func(c *Comparison) { c.Items[5].NMatchedFocal-- }, "matched"},
+		{"summary", func(c *Comparison) { c.Summary.Classes[0].N++ }, "summary"},
+		{"chance", func(c *Comparison) { c.Summary.ExpectedByChance.C *= 2 }, "chance"},
+		{"large", func(c *Comparison) { c.Summary.LargeDifferenceNotExcluded-- }, "large difference"},
+		{"removed", func(c *Comparison) { c.Matching.RemovedItems = []string{"S1DoCurse"} }, "S1DoCurse"},
+		{"not removed", func(c *Comparison) { c.Matching.RemovedItems = c.Matching.RemovedItems[:1] }, "S2DoCurse"},
+		{"stage", func(c *Comparison) { c.Matching.Stages[0].Items[3].ComputedClass = text(ClassCMinus) }, "stage-1"},
+		{"items", func(c *Comparison) { c.Items = c.Items[1:] }, "finding"},
+		{"reason", func(c *Comparison) {
+			c.Items[0].Classification.Class, c.Items[0].Classification.Reason = nil, text(ReasonTooFewCandidates)
+		}, "reason"},
+	} {
+		e := fresh()
+		c.change(&e.Comparisons[0])
+		d := strings.Join(e.Disagreements(), "\n")
+		if !strings.Contains(d, c.want) {
+			t.Errorf("%s changed: %q does not mention %q", c.name, d, c.want)
+		}
+	}
+	e := fresh()
+	e.Inputs.CandidatesAnalysed--
+	if d := e.Disagreements(); len(d) == 0 {
+		t.Error("a lost candidate is not noticed")
+	}
+}
