@@ -2,9 +2,10 @@ package dif
 
 import (
 	"bytes"
+	"cmp"
 	"encoding/json"
 	"fmt"
-	"sort"
+	"slices"
 	"strconv"
 )
 
@@ -62,7 +63,7 @@ func (d *differ) compare(path string, a, b any) {
 				keys = append(keys, k)
 			}
 		}
-		sort.Strings(keys)
+		slices.SortFunc(keys, func(a, b string) int { return cmp.Or(cmp.Compare(rank(a), rank(b)), cmp.Compare(a, b)) })
 		for _, k := range keys {
 			u, inA := x[k]
 			v, inB := y[k]
@@ -103,6 +104,14 @@ func (d *differ) compare(path string, a, b any) {
 			d.say(path, "stored %s, recomputed %s", brief(a), brief(b))
 		}
 	}
+}
+
+// rank puts causes before their effects: engine, inputs and plan before results.
+func rank(key string) int {
+	if i := slices.Index([]string{"schema", "engine", "inputs", "plan"}, key); i >= 0 {
+		return i
+	}
+	return 4
 }
 
 // elementName names an element of a list by what it is about, or by its place from 1.

@@ -86,3 +86,12 @@ func mustRun(t testing.TB, p Plan, d *Data) *Evidence {
 	}
 	return e
 }
+
+func packageDocumentation(t *testing.T) string {
+	t.Helper()
+	b, err := os.ReadFile("doc.go")
+	if err != nil {
+		t.Fatal(err)
+	}
+	return string(b)
+}

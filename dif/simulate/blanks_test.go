@@ -17,7 +17,7 @@ func TestBlanks(t *testing.T) {
 		omitted, notReached float64
 		items, options      int
 	}{
-		{0.04, 0, 30, 0}, {0, 0.03, 30, 0}, {0.05, 0.02, 30, 4}, {0.1, 0.25, 12, 0}, {0, 0.25, 2, 0},
+		{0.04, 0, 30, 0}, {0, 0.03, 30, 0}, {0.05, 0.02, 30, 4}, {0.1, 0.25, 12, 0}, {0, 0.25, 2, 0}, {0.1, 0.25, 3, 0},
 	} {
 		d := design(simulate.TwoPL, 12_000, 8_000, tt.items)
 		d.Options = tt.options

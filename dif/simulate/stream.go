@@ -31,8 +31,8 @@ func newStream(seed int64) *stream {
 
 // start moves to the beginning of one stream: that of an item (group 0) or of a
 // candidate, by index within the group. The generator itself turns the name of the
-// stream into its initial state, since states that differ in a few low bits would
-// give similar first numbers.
+// stream into its initial state: from neighbouring states a linear generator would
+// move through states in a fixed relation.
 func (s *stream) start(p purpose, group, index int) {
 	s.pcg.Seed(s.seed, uint64(p)<<56|uint64(group)<<40|uint64(index))
 	high := s.pcg.Uint64()
