@@ -60,6 +60,8 @@ func (t *tabulator) tabulate(ctx context.Context, mask []uint64, groups []int) (
 	a, w := t.arrangement, t.arrangement.packed.words
 	var runs []countRun
 	var tables []*levelCounts
+	var tableOf []int // of each run
+	place := map[*levelCounts]int{}
 	for pi := range tab.places {
 		p := &tab.places[pi]
 		for i, ri := range p.runs {
@@ -69,6 +71,8 @@ func (t *tabulator) tabulate(ctx context.Context, mask []uint64, groups []int) (
 			}
 			if p.counts[r.group] == nil {
 				p.counts[r.group] = newLevelCounts(p.levels, a.packed.planes())
+				place[p.counts[r.group]] = len(tables)
+				tables = append(tables, p.counts[r.group])
 			}
 			c := countRun{rows: a.rows[r.from*w : r.to*w], words: w, mask: mask}
 			if r.answered >= 0 {
@@ -78,10 +82,10 @@ func (t *tabulator) tabulate(ctx context.Context, mask []uint64, groups []int) (
 				c.level = p.level[i]
 			}
 			runs = append(runs, c)
-			tables = append(tables, p.counts[r.group])
+			tableOf = append(tableOf, place[p.counts[r.group]])
 		}
 	}
-	if err := countParallel(ctx, runs, tables, t.workers); err != nil {
+	if err := countRuns(ctx, runs, tables, tableOf, t.workers); err != nil {
 		return nil, err
 	}
 	for _, g := range groups {

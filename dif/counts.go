@@ -1,0 +1,299 @@
+package dif
+
+import "math/bits"
+
+// levelCounts are the counts that every table of the Mantel-Haenszel family is
+// made of, for the candidates of one group: how many there are at each score
+// level, and how many of those have each bit plane set. A binary item is one
+// plane (right or wrong); an item scored 0..m is m planes, plane k of it set
+// when the score is at least k.
+type levelCounts struct {
+	levels, planes int
+
+	// n[s] is the number of candidates at level s.
+	n []uint32
+
+	// right[s*planes+p] is the number of candidates at level s with plane p set.
+	right []uint32
+
+	// missing[s*planes+p] is the number of candidates at level s without a
+	// scored response to the item of plane p. It is nil while no incomplete
+	// row was counted: then nobody lacks anything.
+	missing []uint32
+}
+
+// newLevelCounts returns empty counts of the levels 0..levels-1. At most
+// 4,294,967,295 candidates can be counted at a level.
+func newLevelCounts(levels, planes int) *levelCounts {
+	return &levelCounts{
+		levels: levels,
+		planes: planes,
+		n:      make([]uint32, levels),
+		right:  make([]uint32, levels*planes),
+	}
+}
+
+// answered returns the number of candidates at a level with a scored response
+// to the item of a plane.
+func (t *levelCounts) answered(level, plane int) uint32 {
+	if t.missing == nil {
+		return t.n[level]
+	}
+	return t.n[level] - t.missing[level*t.planes+plane]
+}
+
+// rightOf returns the counts of a level for all planes, for reading.
+func (t *levelCounts) rightOf(level int) []uint32 {
+	return t.right[level*t.planes : (level+1)*t.planes]
+}
+
+// missingOf is rightOf for missing, which must not be nil.
+func (t *levelCounts) missingOf(level int) []uint32 {
+	return t.missing[level*t.planes : (level+1)*t.planes]
+}
+
+// add adds the counts of other candidates, of the same levels and planes.
+func (t *levelCounts) add(other *levelCounts) {
+	addCounts(t.n, other.n)
+	addCounts(t.right, other.right)
+	if other.missing != nil {
+		t.needMissing()
+		addCounts(t.missing, other.missing)
+	}
+}
+
+func (t *levelCounts) needMissing() {
+	if t.missing == nil {
+		t.missing = make([]uint32, t.levels*t.planes)
+	}
+}
+
+func addCounts(sum, more []uint32) {
+	for i, c := range more[:len(sum)] {
+		sum[i] += c
+	}
+}
+
+// countRun is a run of packed rows: candidates of one group who were presented
+// the same items.
+type countRun struct {
+	// rows holds words 64-bit words per candidate, candidate after candidate.
+	// Plane p is bit p%64 of word p/64. Bits after the last plane are ignored,
+	// save by mask. The bits of an item without a scored response are 0.
+	rows []uint64
+
+	// answered has the shape of rows; a bit is set where the plane's item has
+	// a scored response. nil: every candidate answered every item.
+	answered []uint64
+
+	words int
+
+	// mask, of words words, selects the planes of the matching set: a
+	// candidate's level is the number of bits of the row inside it. It is not
+	// read when level is given.
+	mask []uint64
+
+	// level, when not nil, is the level of each candidate.
+	level []int32
+}
+
+// size returns the number of candidates.
+func (r countRun) size() int { return len(r.rows) / r.words }
+
+// part returns the candidates from, ..., to-1 of the run.
+func (r countRun) part(from, to int) countRun {
+	r.rows = r.rows[from*r.words : to*r.words]
+	if r.answered != nil {
+		r.answered = r.answered[from*r.words : to*r.words]
+	}
+	if r.level != nil {
+		r.level = r.level[from:to]
+	}
+	return r
+}
+
+// score sets level to the levels of the candidates from, from+1, ...
+func (r countRun) score(level []int32, from int) {
+	if r.level != nil {
+		copy(level, r.level[from:])
+		return
+	}
+	scoreRows(level, r.rows[from*r.words:(from+len(level))*r.words], r.mask)
+}
+
+// countBlock is the number of rows that are read and scored ahead of counting
+// them.
+const countBlock = 4096
+
+// countScratch is the working memory of count, kept between calls. Its zero
+// value is ready; one goroutine uses it at a time.
+type countScratch struct {
+	level  [countBlock]int32
+	words  int
+	strips []countStrip
+	counts [64]uint32 // of the lane being drained
+	read   uint64     // keeps readAhead from being optimised away
+}
+
+// stripsFor returns empty strips that together hold words words.
+func (c *countScratch) stripsFor(words, levels int) []countStrip {
+	if c.words != words || c.strips[0].levels() < levels {
+		c.words, c.strips = words, nil
+		for k := 0; k < words; k += maxStripWords {
+			c.strips = append(c.strips, newCountStrip(min(maxStripWords, words-k), levels))
+		}
+	}
+	return c.strips
+}
+
+// A run is counted bit by bit when it has fewer than sparseRows rows per score
+// level, because draining the lanes of a level costs about as much as counting
+// that many rows; and with more than manyLevels levels already when the lanes
+// would take more memory than the rows: a level takes that of laneRowCost rows.
+const (
+	sparseRows  = 8
+	manyLevels  = 4096
+	laneRowCost = 104
+)
+
+// count adds the candidates of a run. Their levels must lie inside the table's,
+// else count panics and table and scratch are of no more use. The result does
+// not depend on how candidates are ordered or divided among runs.
+func (t *levelCounts) count(run countRun, scratch *countScratch) {
+	rows := run.size()
+	switch {
+	case rows < sparseRows*t.levels,
+		t.levels > manyLevels && rows < laneRowCost*t.levels:
+		t.countSparse(run, scratch)
+	default:
+		t.countLanes(run, scratch)
+	}
+}
+
+// countLanes is count for many rows, at least one. The lanes it fills are those
+// of countkernel.go.
+func (t *levelCounts) countLanes(run countRun, scratch *countScratch) {
+	strips := scratch.stripsFor(run.words, t.levels)
+	t.fill(strips, run, false, scratch)
+	t.drain(strips, scratch, func(level, plane int, rows uint32) {
+		if plane == 0 {
+			t.n[level] += rows
+		}
+		right := t.rightOf(level)
+		right = right[min(plane, t.planes):min(plane+64, t.planes)]
+		for i := range right {
+			right[i] += scratch.counts[i]
+		}
+	})
+	if run.answered == nil {
+		return
+	}
+	t.needMissing()
+	t.fill(strips, run, true, scratch)
+	t.drain(strips, scratch, func(level, plane int, rows uint32) {
+		missing := t.missingOf(level)
+		missing = missing[min(plane, t.planes):min(plane+64, t.planes)]
+		for i := range missing {
+			missing[i] += rows - scratch.counts[i]
+		}
+	})
+}
+
+// fill counts the rows of the run, or what they answered, by the level of the
+// row.
+func (t *levelCounts) fill(strips []countStrip, run countRun, answered bool, scratch *countScratch) {
+	data := run.rows
+	if answered {
+		data = run.answered
+	}
+	for from, size := 0, run.size(); from < size; from += countBlock {
+		to := min(from+countBlock, size)
+		block := data[from*run.words : to*run.words]
+		if !answered && run.level == nil {
+			// Narrow rows are scored and counted in one loop.
+			switch c := strips[0].(type) {
+			case countStrip1:
+				scratch.read ^= readAhead(block)
+				c.addScored(block, run.mask[0])
+				continue
+			case countStrip2:
+				scratch.read ^= readAhead(block)
+				c.addScored(block, run.mask[0], run.mask[1])
+				continue
+			}
+		}
+		level := scratch.level[:to-from]
+		run.score(level, from)
+		for k, c := range strips {
+			c.add(level, block[k*maxStripWords:], run.words)
+		}
+	}
+}
+
+// readAhead reads one word of every cache line, which brings the block near
+// before it is counted: the counting loop is too long a way from one line to
+// the next for the processor to do that by itself. Worth a twelfth of the pass.
+func readAhead(block []uint64) uint64 {
+	var x uint64
+	for i := 0; i < len(block); i += 8 {
+		x ^= block[i]
+	}
+	return x
+}
+
+// drain empties the strips. For every word of every level that has rows it puts
+// the counts into scratch.counts and calls each with the level, the first plane
+// of the word and the number of rows.
+func (t *levelCounts) drain(strips []countStrip, scratch *countScratch, each func(level, plane int, rows uint32)) {
+	for k, c := range strips {
+		for s := range c.levels() {
+			rows, lanes := c.close(s)
+			if rows == 0 {
+				continue
+			}
+			for w := range lanes {
+				lanes[w].drain(rows, &scratch.counts)
+				each(s, 64*(k*maxStripWords+w), uint32(rows))
+			}
+		}
+	}
+}
+
+// countSparse is count for few rows: it visits every set bit.
+func (t *levelCounts) countSparse(run countRun, scratch *countScratch) {
+	if run.answered != nil {
+		t.needMissing()
+	}
+	for from, size := 0, run.size(); from < size; from += countBlock {
+		level := scratch.level[:min(countBlock, size-from)]
+		run.score(level, from)
+		for i, s := range level {
+			t.n[s]++
+			right := t.rightOf(int(s))
+			first := (from + i) * run.words
+			for k, w := range run.rows[first : first+run.words] {
+				countSetBits(right, 64*k, w)
+			}
+			if run.answered == nil {
+				continue
+			}
+			missing := t.missingOf(int(s))
+			for k, w := range run.answered[first : first+run.words] {
+				countSetBits(missing, 64*k, ^w)
+			}
+		}
+	}
+}
+
+// countSetBits adds 1 to counts[first+i] for every set bit i of word.
+func countSetBits(counts []uint32, first int, word uint64) {
+	if spare := first + 64 - len(counts); spare > 0 {
+		if spare >= 64 {
+			return
+		}
+		word &= ^uint64(0) >> spare
+	}
+	for ; word != 0; word &= word - 1 {
+		counts[first+bits.TrailingZeros64(word)]++
+	}
+}
