@@ -7,14 +7,14 @@ import (
 	"difaudit/dif"
 )
 
-// Levels and their joining worked out by hand.
+// Levels and their joining worked out by hand; the two sets at score 5 stay together.
 func TestMergeLevels(t *testing.T) {
 	t.Parallel()
 	strata := []dif.StratumSummary{
-		{Score: 5, NReference: 12, MeanReference: 0.75, NFocal: 4, MeanFocal: 0.25},
+		{Score: 5, NReference: 12, MeanReference: 0.75, NFocal: 11, MeanFocal: 3.0 / 11},
 		{Score: 1, NReference: 3, MeanReference: 0, NFocal: 10, MeanFocal: 0.1},
 		{Score: 2, NReference: 7, MeanReference: 3.0 / 7, NFocal: 2, MeanFocal: 0.5},
-		{Score: 5, NReference: 8, MeanReference: 0.5, NFocal: 6, MeanFocal: 0.5, Set: 2},
+		{Score: 5, NReference: 8, MeanReference: 0.5, NFocal: 7, MeanFocal: 3.0 / 7, Set: 2},
 		{Score: 6, NReference: 2, MeanReference: 1, NFocal: 3, MeanFocal: 1},
 	}
 	got := mergeLevels(strata, 1, 14)
@@ -23,7 +23,7 @@ func TestMergeLevels(t *testing.T) {
 	}
 	for i, want := range []curvePoint{
 		{nReference: 10, nFocal: 12, score: (13*1.0 + 9*2) / 22, shareReference: 3.0 / 10, shareFocal: 2.0 / 12},
-		{nReference: 22, nFocal: 13, score: (30*5.0 + 5*6) / 35, shareReference: (9 + 4 + 2) / 22.0, shareFocal: (1 + 3 + 3) / 13.0},
+		{nReference: 22, nFocal: 21, score: (38*5.0 + 5*6) / 43, shareReference: (9 + 4 + 2) / 22.0, shareFocal: (3 + 3 + 3) / 21.0},
 	} {
 		p := got[i]
 		if p.nReference != want.nReference || p.nFocal != want.nFocal {

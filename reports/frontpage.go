@@ -184,8 +184,11 @@ func (r *report) frontTable() {
 	if noVerdict > 0 {
 		verdicts = wasWere(noVerdict) + " left without a verdict."
 	}
-	r.paragraph(fmt.Sprintf("%s give %s. %s lettered B or C, where %s would be expected by chance if no item worked differently; %s",
-		plural(n, "comparison", "comparisons"), plural(findings, "finding", "findings"), wasWere(flagged), about(chance), verdicts), body)
+	flags := fmt.Sprintf("%s lettered B or C, where %s would be expected by chance if no item worked differently; %s", wasWere(flagged), about(chance), verdicts)
+	if noVerdict == findings {
+		flags = "None could be given a letter; the sections say why."
+	}
+	r.paragraph(fmt.Sprintf("%s give %s. %s", plural(n, "comparison", "comparisons"), plural(findings, "finding", "findings"), flags), body)
 	r.space(1.5)
 	r.outcomeTable(shownRows)
 	if n <= mostHeadlines {
