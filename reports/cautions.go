@@ -30,8 +30,7 @@ func cautions(x *exposed) []caution {
 		{"A signal, not a judgement", "A letter tells how far an item's statistics stand from no difference. Whether the item, the test or anybody's work is at fault is a question " +
 			"about content and use that statistics cannot answer; it needs people who know both."},
 		{"Silence proves little", "An item without a flag may still work differently. " + detectableText(x)},
-		{"Few candidates", fmt.Sprintf("Where fewer than %s candidates of the smaller group, or %s in all, could be matched, results are kept to add up over later sittings. They do not settle anything about an item today.",
-			whole(c.MinSmallerGroup), whole(c.MinTotal))},
+		{"Few candidates", fewCandidates(c)},
 		{"Chance", chance},
 		{"The yardstick is the test itself", yardstick(x)},
 		{"Group labels", "Labels are mostly what candidates said of themselves, in categories coarser than people are. " + notStatedText(x)},
@@ -42,6 +41,14 @@ func cautions(x *exposed) []caution {
 		{"Scope", fmt.Sprintf("The results hold for the %s, the %s and the data named by the digest on the first page, and for nothing else.",
 			plural(len(x.inputs.Items), "item version", "item versions"), plural(x.inputs.CandidatesAnalysed, "analysed record", "analysed records"))},
 	}
+}
+
+func fewCandidates(c dif.Criteria) string {
+	if c.MinSmallerGroup == 0 && c.MinTotal == 0 {
+		return "This plan sets no least number of candidates. Letters that rest on few candidates are uncertain; published practice asks for at least 200 in the smaller group and 500 in all (Zwick 2012)."
+	}
+	return fmt.Sprintf("Where fewer than %s candidates of the smaller group, or %s in all, could be matched, results are kept to add up over later sittings. They do not settle anything about an item today.",
+		whole(c.MinSmallerGroup), whole(c.MinTotal))
 }
 
 func yardstick(x *exposed) string {

@@ -55,18 +55,34 @@ func (r *report) matchingPart(c *exposedComparison) {
 		text += fmt.Sprintf(" Half of the items would show a true D-DIF of %s or more with 80 %% power; smaller ones are usually missed.", fixed(d, 2))
 	}
 	r.paragraph(text, body)
-	if len(c.sets) > 0 {
-		r.space(1.5)
-		const most = 40
-		columns := []tableColumn{{"Set", 14, alignRight}, {head: "Form"}, {"Items", 18, alignRight}, {"Reference", 30, alignRight}, {"Focal", 30, alignRight}}
-		var rows [][]tableCell
-		for _, s := range c.sets[:min(most, len(c.sets))] {
+	r.setsPart(c.sets)
+}
+
+// setsPart lists the presented sets: those of a named form, and those whose groups are
+// large enough to be shown. The others are only counted.
+func (r *report) setsPart(sets []exposedSet) {
+	const most = 40
+	var rows [][]tableCell
+	small, more := 0, 0
+	for _, s := range sets {
+		switch {
+		case s.Form == nil && (s.reference.hiding != visible || s.focal.hiding != visible):
+			small++
+		case len(rows) == most:
+			more++
+		default:
 			rows = append(rows, cells(fmt.Sprint(s.Set), orMissing(s.Form), whole(s.Items), s.reference.String(), s.focal.String()))
 		}
-		r.table(columns, rows, 7.5)
-		if len(c.sets) > most {
-			r.paragraph(fmt.Sprintf("%s more stand in the evidence.", plural(len(c.sets)-most, "set", "sets")), caption)
-		}
+	}
+	if len(rows) > 0 {
+		r.space(1.5)
+		r.table([]tableColumn{{"Set", 14, alignRight}, {head: "Form"}, {"Items", 18, alignRight}, {"Reference", 30, alignRight}, {"Focal", 30, alignRight}}, rows, 7.5)
+	}
+	if small > 0 {
+		r.paragraph(fmt.Sprintf("%s with fewer than 10 candidates of a group, or withheld to protect one, not listed.", plural(small, "further set", "further sets")), caption)
+	}
+	if more > 0 {
+		r.paragraph(fmt.Sprintf("%s more stand in the evidence.", plural(more, "set", "sets")), caption)
 	}
 }
 
