@@ -82,7 +82,11 @@ func (r *reading) exclude(order []int32) (kept []int32, exclusions []dif.Exclusi
 	var copies []int32
 	original := map[int32]int32{}
 	kept = make([]int32, 0, len(order))
+	exclusions = []dif.Exclusion{}
 	rec.runs(order, true, func(run []int32) {
+		if len(rec.ids.At(int(run[0]))) == 0 {
+			return // reported already, and not one candidate
+		}
 		kept = append(kept, run[0])
 		if len(run) == 1 {
 			return

@@ -71,7 +71,7 @@ func (e *encoder) learn(label string) (byte, bool) {
 	c := byte(len(e.labels))
 	e.labels = append(e.labels, label)
 	e.codes[label] = c
-	if _, lost := e.missing[label]; !lost && len(label) == 1 {
+	if len(label) == 1 {
 		e.table[label[0]] = c
 	}
 	return c, true

@@ -13,17 +13,16 @@ import (
 // item is an item version while the files are read.
 type item struct {
 	dif.Item
-	file        string // where it is described
-	row         int
-	scoreGiven  bool   // max_score was declared
-	optionsText string // as the items file has it
-	broken      bool   // its description could not be used
-	given       bool   // some row of a long file names it
-	absent      bool   // no column, or no row of a long file, names it
-	suspect     bool   // presumed an item until a cell showed otherwise
-	formKeys    []string
-	enc         *encoder
-	index       int // place in the data
+	file       string // where it is described
+	row        int
+	scoreGiven bool // max_score was declared
+	broken     bool // its description could not be used
+	given      bool // some row of a long file names it
+	absent     bool // no column, or no row of a long file, names it
+	suspect    bool // presumed an item until a cell showed otherwise
+	formKeys   []string
+	enc        *encoder
+	index      int // place in the data
 }
 
 // raw reports whether the item is answered with choices as far as was declared.
@@ -166,8 +165,8 @@ func readItem(t *table, record []string, problems *Problems) *item {
 		}
 	}
 	var err error
-	if it.optionsText = cell("options"); it.optionsText != "" {
-		if it.Options, err = options(it.optionsText); err != nil {
+	if text := cell("options"); text != "" {
+		if it.Options, err = options(text); err != nil {
 			bad(badValue, "options", "%v", err)
 		}
 	}

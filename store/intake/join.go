@@ -45,6 +45,9 @@ func (r *reading) combineLabels(order []int32, people []int32) {
 		}
 		codes := rec.labels[g]
 		rec.runs(order, false, func(run []int32) {
+			if len(rec.ids.At(int(run[0]))) == 0 {
+				return // reported already, and not one candidate
+			}
 			code := uint16(0)
 			alone := codeSeveral != codes[run[0]]
 			for _, i := range run {
@@ -76,7 +79,7 @@ func (r *reading) combineLabels(order []int32, people []int32) {
 	}
 	var alone []int32
 	rec.runs(order, false, func(run []int32) {
-		if people[run[0]] < 0 {
+		if people[run[0]] < 0 && len(rec.ids.At(int(run[0]))) > 0 {
 			alone = append(alone, rec.rows[run[0]])
 		}
 	})

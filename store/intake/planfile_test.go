@@ -132,7 +132,7 @@ func TestReadPlanFaults(t *testing.T) {
 		"no comparison":         {"seed: 3\n", "comparisons: name at least one"},
 		"too long":              {minimalPlan + strings.Repeat("#", 1<<20), "longer than 1 MiB"},
 		"many lines":            {strings.Repeat("-\n", 500_000), "the limit"},
-		"many keys":             {"{" + strings.Repeat("k: 1, ", 150_000) + "}", "the key k stands here"},
+		"many keys":             {"{" + strings.Repeat("k: 1, ", 15_000) + "}", "the key k stands here"},
 		"nested deep":           {"title: " + strings.Repeat("[", 100_000), "nests deeper"},
 		"nested deep in JSON":   {"{\"title\": " + strings.Repeat("[", 100_000), "nests deeper"},
 		"nested deep by dashes": {strings.Repeat("- ", 100_000), "nests deeper"},
@@ -143,7 +143,7 @@ func TestReadPlanFaults(t *testing.T) {
 		}
 	}
 	var keys strings.Builder
-	for i := range 100_000 {
+	for i := range 10_000 {
 		fmt.Fprintf(&keys, "%d: 1,", i)
 	}
 	if _, err := ReadPlan("plan.yaml", strings.NewReader("{"+keys.String()+"}")); err == nil || !strings.Contains(err.Error(), "more than 5000 keys") {

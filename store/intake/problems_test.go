@@ -99,7 +99,7 @@ var problemCases = []struct {
 	{unknownItem, input{responses: fourRows, items: twoItems, forms: "form,position,item_id,version\nF,1,Q1,2\nF,2,Q2,1\n"}, "forms.csv", 2, "version", "not this version"},
 	{unknownItem, input{responses: fourRows, forms: "form,position,item_id\nF,1,Q1\nF,2,Q9\n"}, "forms.csv", 3, "item_id", "no column for item Q9"},
 	{unknownItem, input{responses: "candidate_id,item_id,response\na,Q1,1\nb,Q3,1\n", items: twoItems, candidates: "candidate_id,sex\na,m\nb,f\n"}, "responses.csv", 3, "item_id", "Q3 is not in the items file"},
-	{unknownForm, input{responses: "candidate_id,sex,form,Q1\na,m,F,1\nb,f,H,1\n", forms: "form,position,item_id\nF,1,Q1\nG,1,Q1\n"}, "responses.csv", 3, "form", "form H is not in the forms file"},
+	{unknownForm, input{responses: "candidate_id,sex,form,Q1\na,m,F,1\nb,f,H,1\n", forms: "form,position,item_id\nF,1,Q1\nG,1,Q1\n"}, "responses.csv", 3, "form", "not in the forms file"},
 	{formMissing, input{responses: "candidate_id,sex,form,Q1\na,m,F,1\nb,f,,1\n"}, "responses.csv", 3, "form", "--ignore form"},
 	{formColumnMissing, input{responses: fourRows, forms: "form,position,item_id\nF,1,Q1\nG,1,Q2\n"}, "responses.csv", 1, "form", "add the column"},
 	{formDiffers, input{responses: "candidate_id,form,item_id,response\na,F,Q1,1\na,G,Q2,1\nb,F,Q1,0\n", candidates: "candidate_id,sex\na,m\nb,f\n"}, "responses.csv", 3, "form", "row 2 gives this candidate another form"},

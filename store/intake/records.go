@@ -49,7 +49,7 @@ func parseExternal(cell string, t *table, problems *Problems) float64 {
 	}
 	x, err := strconv.ParseFloat(cell, 64)
 	if err != nil || math.IsNaN(x) || math.IsInf(x, 0) {
-		problems.add(valueOutOfRange, t.name, t.row, "external_score", "%s is not a number; write it with a decimal point, or leave the cell empty where the candidate has no score", quoted(cell))
+		problems.add(valueOutOfRange, t.name, t.row, "external_score", "the cell is not a number; write it with a decimal point, or leave it empty where the candidate has no score")
 		return math.NaN()
 	}
 	return x + 0 // no negative zero
@@ -78,7 +78,7 @@ func (r *formReader) read(cell string, t *table, problems *Problems) (int, bool)
 	f, known := r.set.byID[id]
 	if !known {
 		if r.set.declared {
-			problems.add(unknownForm, t.name, t.row, "form", "form %s is not in the forms file; add it there or correct the cell", shown(id))
+			problems.add(unknownForm, t.name, t.row, "form", "the form of this row is not in the forms file; add it there or correct the cell")
 			return 0, false
 		}
 		if f, known = r.set.label(id); !known {

@@ -229,6 +229,33 @@ func TestSeveralLabels(t *testing.T) {
 	}
 }
 
+// A label stated in one row holds for the candidate's other rows.
+func TestStatedLabelHoldsForAllRows(t *testing.T) {
+	t.Parallel()
+	d := input{
+		responses: "candidate_id,sex,attempt,Q1\na,m,1,1\na,,2,0\nb,,1,0\nb,f,2,1\n",
+		plan:      func(p *dif.Plan) { p.Attempts = dif.AttemptsAll },
+	}.good(t).Data
+	if diff := cmp.Diff([]uint16{2, 2, 1, 1}, d.Groupings[0].Codes); diff != "" {
+		t.Error(diff)
+	}
+}
+
+// Rows that agree in their answers and differ in form or external score are no copies.
+func TestCopiesAgreeInEverything(t *testing.T) {
+	t.Parallel()
+	for name, rows := range map[string]string{
+		"form":           "a,m,F,1,1\nb,f,F,2,0\na,m,G,1,1\n",
+		"external score": "a,m,F,1,1\nb,f,F,2,0\na,m,F,3,1\n",
+		"one score":      "a,m,F,1,1\nb,f,F,2,0\na,m,F,,1\n",
+	} {
+		p := input{responses: "candidate_id,sex,form,external_score,Q1\n" + rows}.problems(t)
+		if p.Count(conflictingDuplicate) != 1 || p.Count(exactDuplicate) != 0 {
+			t.Errorf("%s: got\n%s", name, printed(t, p))
+		}
+	}
+}
+
 func TestCrossings(t *testing.T) {
 	t.Parallel()
 	in := input{

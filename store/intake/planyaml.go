@@ -1,0 +1,149 @@
+package intake
+
+import (
+	"bytes"
+	"errors"
+
+	"github.com/goccy/go-yaml"
+	"github.com/goccy/go-yaml/ast"
+	"github.com/goccy/go-yaml/parser"
+)
+
+// parsePlanYAML returns the tree of a YAML document.
+func parsePlanYAML(content []byte) (node planNode, err error) {
+	if line, deep := deepest(content); deep > maxPlanDepth {
+		return node, atLine(line, "the plan nests deeper than %d levels", maxPlanDepth)
+	}
+	parts := 0
+	for _, c := range []string{"\n", "\r", ","} {
+		parts += bytes.Count(content, []byte(c))
+	}
+	if parts -= bytes.Count(content, []byte("\r\n")); parts > maxPlanParts {
+		return node, atLine(0, "the plan has %d lines and commas, and %d is the limit", parts, maxPlanParts)
+	}
+	defer func() {
+		if recover() != nil {
+			err = atLine(0, "the plan cannot be read as YAML")
+		}
+	}()
+	file, err := parser.ParseBytes(content, 0, parser.AllowDuplicateMapKey())
+	if err != nil {
+		var at yaml.Error
+		if errors.As(err, &at) && at.GetToken() != nil && at.GetToken().Position != nil {
+			return node, atLine(at.GetToken().Position.Line, "the plan is not valid YAML: %s", shown(at.GetMessage()))
+		}
+		return node, atLine(0, "the plan is not valid YAML")
+	}
+	var body ast.Node
+	for _, doc := range file.Docs {
+		switch {
+		case doc.Body == nil:
+		case body != nil:
+			return node, atLine(doc.Body.GetToken().Position.Line, "a second document starts here; a plan file holds one plan")
+		default:
+			body = doc.Body
+		}
+	}
+	if body == nil {
+		return node, atLine(0, "the plan is empty; it needs at least comparisons")
+	}
+	return fromYAML(body, 0)
+}
+
+// deepest returns the line of the deepest nesting and its depth: by brackets, without
+// regard to quotation marks, and by the dashes, question marks and colons that start a line.
+func deepest(content []byte) (line, depth int) {
+	brackets := 0
+	for n, text := range bytes.Split(content, []byte("\n")) {
+		starts, starting := 0, true
+		for _, c := range text {
+			switch c {
+			case '[', '{':
+				brackets++
+			case ']', '}':
+				brackets = max(0, brackets-1)
+			case '-', '?', ':':
+				if starting {
+					starts++
+				}
+			}
+			starting = starting && (c == ' ' || c == '-' || c == '?' || c == ':')
+			if brackets+starts/2 > depth {
+				line, depth = n+1, brackets+starts/2
+			}
+		}
+	}
+	return line, depth
+}
+
+func fromYAML(n ast.Node, depth int) (planNode, error) {
+	if n == nil || n.GetToken() == nil || n.GetToken().Position == nil {
+		return planNode{kind: nullNode}, nil
+	}
+	node := planNode{line: n.GetToken().Position.Line, text: n.GetToken().Value}
+	if depth > maxPlanDepth {
+		return node, atLine(node.line, "the plan nests deeper than %d levels", maxPlanDepth)
+	}
+	switch n := n.(type) {
+	case *ast.StringNode:
+		node.text = n.Value
+	case *ast.LiteralNode:
+		node.text = n.Value.Value
+	case *ast.IntegerNode, *ast.FloatNode, *ast.BoolNode, *ast.InfinityNode, *ast.NanNode:
+	case *ast.NullNode:
+		node.kind = nullNode
+	case *ast.SequenceNode:
+		node.kind = listNode
+		for _, v := range n.Values {
+			child, err := fromYAML(v, depth+1)
+			if err != nil {
+				return node, err
+			}
+			if child.line == 0 {
+				child.line = node.line
+			}
+			node.list = append(node.list, child)
+		}
+	case *ast.MappingNode:
+		node.kind = mappingNode
+		for _, v := range n.Values {
+			if err := node.addYAML(v, depth); err != nil {
+				return node, err
+			}
+		}
+	case *ast.MappingValueNode:
+		node.kind = mappingNode
+		if err := node.addYAML(n, depth); err != nil {
+			return node, err
+		}
+	case *ast.AnchorNode, *ast.AliasNode:
+		return node, atLine(node.line, "anchors and aliases (& and *) are not used in plans; write the value out, or in quotation marks")
+	case *ast.TagNode:
+		return node, atLine(node.line, "tags (!) are not used in plans; write the value in quotation marks")
+	default:
+		return node, atLine(node.line, "this kind of YAML value is not used in plans")
+	}
+	return node, nil
+}
+
+// addYAML adds one entry of a mapping.
+func (n *planNode) addYAML(v *ast.MappingValueNode, depth int) error {
+	var name string
+	switch key := v.Key.(type) {
+	case *ast.StringNode:
+		name = key.Value
+	case *ast.IntegerNode, *ast.FloatNode, *ast.BoolNode, *ast.NullNode:
+		name = key.GetToken().Value
+	default:
+		return atLine(n.line, "a key of a plan is a plain name")
+	}
+	line := v.Key.GetToken().Position.Line
+	value, err := fromYAML(v.Value, depth+1)
+	if err != nil {
+		return err
+	}
+	if value.line == 0 {
+		value.line = line
+	}
+	return n.addField(name, line, value)
+}
