@@ -1,16 +1,20 @@
 package dif
 
 // This file is the positional population count: how often each of the 64 bits
-// of a word is set, over many words. The words wait in a buffer and are added
-// sixty-four at a time with carry-save adders, so a word costs about five logic
-// operations, however many of its bits are set.
+// of a word is set, over many words. Sixty-four words at a time are added with
+// carry-save adders, so a word costs about five logic operations, however many
+// of its bits are set.
 //
 // Sources, from memory: the carry-save tree of Harley and Seal in Warren,
 // Hacker's Delight; its use per position by Klarqvist, Mula and Lemire.
 
 const (
-	// laneRows is how many rows wait at a level before they are folded.
+	// laneRows is how many words are folded at a time, and how many results
+	// of that are folded again.
 	laneRows = 64
+
+	// foldStep divides the number of words in a fold.
+	foldStep = 16
 
 	// counterBits is the width of a bit-sliced counter: that of the uint32
 	// tables, so a counter overflows only where its table would.
@@ -20,62 +24,81 @@ const (
 // countLane counts the bits of one word position of the rows of one score
 // level. Bit i of planes[k] is bit k of the count of bit position i.
 type countLane struct {
-	carries [8]uint64           // results of weight 64 not yet folded
 	planes  [counterBits]uint64 // bit-sliced counters
+	carries [laneRows]uint64    // results of weight 64 not yet folded
 }
 
-// waitingRows are laneRows rows of one to four words, one after the other.
-type waitingRows interface {
-	[1 * laneRows]uint64 | [2 * laneRows]uint64 | [3 * laneRows]uint64 | [4 * laneRows]uint64
-}
-
-// foldLane adds word k of all waiting rows to the counters. The block number
-// says how many folds came before this one.
-func foldLane[R waitingRows](l *countLane, waiting *R, k int, block uint64) {
-	stride := len(*waiting) / laneRows // words of a row, constant for each R
-	if k < 0 || k >= stride {
-		panic("dif: word outside the row") // spares the loop its bounds checks
+// inOrder are the positions of words that follow each other.
+var inOrder = func() (at [laneRows]uint32) {
+	for i := range at {
+		at[i] = uint32(i)
 	}
-	var eights [laneRows / 8]uint64
-	ones, twos, fours := l.planes[0], l.planes[1], l.planes[2]
-	i := 0
-	for j := k; j < len(*waiting)-7*stride; j += 8 * stride {
-		// addEight written out: the call would cost a tenth of the loop.
-		var twosA, twosB, foursA, foursB uint64
-		twosA, ones = carrySave((*waiting)[j], (*waiting)[j+stride], ones)
-		twosB, ones = carrySave((*waiting)[j+2*stride], (*waiting)[j+3*stride], ones)
+	return at
+}()
+
+// foldWords adds the words at some places of data to six bit planes of weight
+// 1, 2, ..., 32; what no longer fits is the returned word of weight 64. There
+// are at most laneRows places, a multiple of foldStep.
+func foldWords(planes *[6]uint64, data []uint64, places []uint32) uint64 {
+	var sixteens [laneRows / foldStep]uint64
+	ones, twos, fours, eights := planes[0], planes[1], planes[2], planes[3]
+	for i := range sixteens {
+		if len(places) < foldStep {
+			break
+		}
+		at := (*[foldStep]uint32)(places)
+		var twosA, twosB, foursA, foursB, eightsA, eightsB uint64
+		twosA, ones = carrySave(data[at[0]], data[at[1]], ones)
+		twosB, ones = carrySave(data[at[2]], data[at[3]], ones)
 		foursA, twos = carrySave(twosA, twosB, twos)
-		twosA, ones = carrySave((*waiting)[j+4*stride], (*waiting)[j+5*stride], ones)
-		twosB, ones = carrySave((*waiting)[j+6*stride], (*waiting)[j+7*stride], ones)
+		twosA, ones = carrySave(data[at[4]], data[at[5]], ones)
+		twosB, ones = carrySave(data[at[6]], data[at[7]], ones)
 		foursB, twos = carrySave(twosA, twosB, twos)
-		eights[i%8], fours = carrySave(foursA, foursB, fours)
-		i++
+		eightsA, fours = carrySave(foursA, foursB, fours)
+		twosA, ones = carrySave(data[at[8]], data[at[9]], ones)
+		twosB, ones = carrySave(data[at[10]], data[at[11]], ones)
+		foursA, twos = carrySave(twosA, twosB, twos)
+		twosA, ones = carrySave(data[at[12]], data[at[13]], ones)
+		twosB, ones = carrySave(data[at[14]], data[at[15]], ones)
+		foursB, twos = carrySave(twosA, twosB, twos)
+		eightsB, fours = carrySave(foursA, foursB, fours)
+		sixteens[i], eights = carrySave(eightsA, eightsB, eights)
+		places = places[foldStep:]
 	}
-	l.planes[0], l.planes[1], l.planes[2] = ones, twos, fours
-	l.planes[3], l.planes[4], l.planes[5], l.carries[block%8] = addEight(l.planes[3], l.planes[4], l.planes[5], &eights)
-	if block%8 == 7 {
-		l.foldCarries()
+	planes[0], planes[1], planes[2], planes[3] = ones, twos, fours, eights
+	a, sum := carrySave(sixteens[0], sixteens[1], planes[4])
+	b, sum := carrySave(sixteens[2], sixteens[3], sum)
+	carry, high := carrySave(a, b, planes[5])
+	planes[4], planes[5] = sum, high
+	return carry
+}
+
+// fold adds the words at the places of data. The block number says how many
+// folds came before this one.
+func (l *countLane) fold(data []uint64, places []uint32, block uint32) {
+	l.carries[block%laneRows] = foldWords((*[6]uint64)(l.planes[:]), data, places)
+	if block%laneRows == laneRows-1 {
+		l.foldCarries(laneRows)
 	}
 }
 
-// foldCarries adds the eight carries of weight 64 to the counters. Collecting
-// eight of them first matters: how far a single carry ripples is a branch that
-// no processor can foresee.
-func (l *countLane) foldCarries() {
-	var carry uint64
-	l.planes[6], l.planes[7], l.planes[8], carry = addEight(l.planes[6], l.planes[7], l.planes[8], &l.carries)
-	for k := 9; k < counterBits && carry != 0; k++ {
+// foldCarries adds the first carries of weight 64 to the counters. Collecting
+// them first matters: how far a single carry ripples is a branch that no
+// processor can foresee.
+func (l *countLane) foldCarries(carries int) {
+	whole := (carries + foldStep - 1) / foldStep * foldStep
+	clear(l.carries[carries:whole])
+	carry := foldWords((*[6]uint64)(l.planes[6:]), l.carries[:], inOrder[:whole])
+	for k := 12; k < counterBits && carry != 0; k++ {
 		l.planes[k], carry = l.planes[k]^carry, l.planes[k]&carry
 	}
 }
 
-// drain sets counts to the counts of the lane after rows rows, all of them
-// folded, and empties the lane.
-func (l *countLane) drain(rows uint64, counts *[64]uint32) {
-	blocks := (rows + laneRows - 1) / laneRows
-	if r := blocks % 8; r != 0 {
-		clear(l.carries[r:])
-		l.foldCarries()
+// drain sets counts to the counts of the lane after rows rows and some number
+// of folds, and empties the lane.
+func (l *countLane) drain(rows, blocks uint32, counts *[64]uint32) {
+	if r := int(blocks % laneRows); r != 0 {
+		l.foldCarries(r)
 	}
 	planes := l.planes
 	l.planes = [counterBits]uint64{}
@@ -92,23 +115,10 @@ func (l *countLane) drain(rows uint64, counts *[64]uint32) {
 	}
 }
 
-// addEight adds eight words to three bit planes of weight 1, 2 and 4; what no
-// longer fits is the returned word of weight 8.
-func addEight(ones, twos, fours uint64, w *[8]uint64) (_, _, _, eights uint64) {
-	twosA, ones := carrySave(w[0], w[1], ones)
-	twosB, ones := carrySave(w[2], w[3], ones)
-	foursA, twos := carrySave(twosA, twosB, twos)
-	twosA, ones = carrySave(w[4], w[5], ones)
-	twosB, ones = carrySave(w[6], w[7], ones)
-	foursB, twos := carrySave(twosA, twosB, twos)
-	eights, fours = carrySave(foursA, foursB, fours)
-	return ones, twos, fours, eights
-}
-
 // carrySave adds three one-bit numbers in each of 64 positions.
 func carrySave(a, b, c uint64) (high, low uint64) {
 	u := a ^ b
-	return a&b | u&c, u ^ c
+	return (a^c)&u ^ a, u ^ c
 }
 
 // transposePlanes turns bit planes into counters. There are as many planes as a

@@ -1,6 +1,9 @@
 package dif
 
-import "math/bits"
+import (
+	"math"
+	"math/bits"
+)
 
 // levelCounts are the counts that every table of the Mantel-Haenszel family is
 // made of, for the candidates of one group: how many there are at each score
@@ -121,61 +124,48 @@ func (r countRun) score(level []int32, from int) {
 	scoreRows(level, r.rows[from*r.words:(from+len(level))*r.words], r.mask)
 }
 
-// countBlock is the number of rows that are read and scored ahead of counting
-// them.
-const countBlock = 4096
+// countBlock is the number of rows that are scored ahead of counting them.
+const countBlock = maxBatch
 
 // countScratch is the working memory of count, kept between calls. Its zero
 // value is ready; one goroutine uses it at a time.
 type countScratch struct {
 	level  [countBlock]int32
-	words  int
-	strips []countStrip
+	lists  countLists
 	counts [64]uint32 // of the lane being drained
-	read   uint64     // keeps readAhead from being optimised away
-}
-
-// stripsFor returns empty strips that together hold words words.
-func (c *countScratch) stripsFor(words, levels int) []countStrip {
-	if c.words != words || c.strips[0].levels() < levels {
-		c.words, c.strips = words, nil
-		for k := 0; k < words; k += maxStripWords {
-			c.strips = append(c.strips, newCountStrip(min(maxStripWords, words-k), levels))
-		}
-	}
-	return c.strips
 }
 
 // A run is counted bit by bit when it has fewer than sparseRows rows per score
 // level, because draining the lanes of a level costs about as much as counting
-// that many rows; and with more than manyLevels levels already when the lanes
-// would take more memory than the rows: a level takes that of laneRowCost rows.
+// that many rows; and with more than manyLevels levels, because going over the
+// lists of all levels after every batch would cost more than the rows.
 const (
-	sparseRows  = 8
-	manyLevels  = 4096
-	laneRowCost = 104
+	sparseRows = 8
+	manyLevels = 4096
 )
 
 // count adds the candidates of a run. Their levels must lie inside the table's,
 // else count panics and table and scratch are of no more use. The result does
 // not depend on how candidates are ordered or divided among runs.
 func (t *levelCounts) count(run countRun, scratch *countScratch) {
-	rows := run.size()
-	switch {
-	case rows < sparseRows*t.levels,
-		t.levels > manyLevels && rows < laneRowCost*t.levels:
+	if rows := run.size(); rows < sparseRows*t.levels || t.levels > manyLevels {
 		t.countSparse(run, scratch)
-	default:
-		t.countLanes(run, scratch)
+		return
 	}
+	t.countLanes(run, scratch)
 }
 
 // countLanes is count for many rows, at least one. The lanes it fills are those
 // of countkernel.go.
 func (t *levelCounts) countLanes(run countRun, scratch *countScratch) {
-	strips := scratch.stripsFor(run.words, t.levels)
-	t.fill(strips, run, false, scratch)
-	t.drain(strips, scratch, func(level, plane int, rows uint32) {
+	if rows := run.size(); uint64(len(run.rows)) > math.MaxUint32 && rows > 1 {
+		// Places are uint32.
+		t.countLanes(run.part(0, rows/2), scratch)
+		t.countLanes(run.part(rows/2, rows), scratch)
+		return
+	}
+	t.fill(run, run.rows, scratch)
+	t.drain(run.rows, scratch, func(level, plane int, rows uint32) {
 		if plane == 0 {
 			t.n[level] += rows
 		}
@@ -189,8 +179,8 @@ func (t *levelCounts) countLanes(run countRun, scratch *countScratch) {
 		return
 	}
 	t.needMissing()
-	t.fill(strips, run, true, scratch)
-	t.drain(strips, scratch, func(level, plane int, rows uint32) {
+	t.fill(run, run.answered, scratch)
+	t.drain(run.answered, scratch, func(level, plane int, rows uint32) {
 		missing := t.missingOf(level)
 		missing = missing[min(plane, t.planes):min(plane+64, t.planes)]
 		for i := range missing {
@@ -199,62 +189,39 @@ func (t *levelCounts) countLanes(run countRun, scratch *countScratch) {
 	})
 }
 
-// fill counts the rows of the run, or what they answered, by the level of the
-// row.
-func (t *levelCounts) fill(strips []countStrip, run countRun, answered bool, scratch *countScratch) {
-	data := run.rows
-	if answered {
-		data = run.answered
-	}
-	for from, size := 0, run.size(); from < size; from += countBlock {
-		to := min(from+countBlock, size)
-		block := data[from*run.words : to*run.words]
-		if !answered && run.level == nil {
-			// Narrow rows are scored and counted in one loop.
-			switch c := strips[0].(type) {
-			case countStrip1:
-				scratch.read ^= readAhead(block)
-				c.addScored(block, run.mask[0])
-				continue
-			case countStrip2:
-				scratch.read ^= readAhead(block)
-				c.addScored(block, run.mask[0], run.mask[1])
-				continue
-			}
+// fill counts data, which is the rows of the run or what they answered, by the
+// level of the row.
+func (t *levelCounts) fill(run countRun, data []uint64, scratch *countScratch) {
+	lists, size := &scratch.lists, run.size()
+	lists.reset(size, run.words, t.levels)
+	for from := 0; from < size; from += lists.batch {
+		to := min(from+lists.batch, size)
+		switch {
+		case run.level == nil && run.words == 1:
+			lists.addScored1(run.rows, from, to, run.mask[0])
+		case run.level == nil && run.words == 2:
+			lists.addScored2(run.rows, from, to, run.mask[0], run.mask[1])
+		default:
+			level := scratch.level[:to-from]
+			run.score(level, from)
+			lists.add(level, from*run.words)
 		}
-		level := scratch.level[:to-from]
-		run.score(level, from)
-		for k, c := range strips {
-			c.add(level, block[k*maxStripWords:], run.words)
-		}
+		lists.fold(data)
 	}
 }
 
-// readAhead reads one word of every cache line, which brings the block near
-// before it is counted: the counting loop is too long a way from one line to
-// the next for the processor to do that by itself. Worth a twelfth of the pass.
-func readAhead(block []uint64) uint64 {
-	var x uint64
-	for i := 0; i < len(block); i += 8 {
-		x ^= block[i]
-	}
-	return x
-}
-
-// drain empties the strips. For every word of every level that has rows it puts
+// drain empties the lists. For every word of every level that has rows it puts
 // the counts into scratch.counts and calls each with the level, the first plane
 // of the word and the number of rows.
-func (t *levelCounts) drain(strips []countStrip, scratch *countScratch, each func(level, plane int, rows uint32)) {
-	for k, c := range strips {
-		for s := range c.levels() {
-			rows, lanes := c.close(s)
-			if rows == 0 {
-				continue
-			}
-			for w := range lanes {
-				lanes[w].drain(rows, &scratch.counts)
-				each(s, 64*(k*maxStripWords+w), uint32(rows))
-			}
+func (t *levelCounts) drain(data []uint64, scratch *countScratch, each func(level, plane int, rows uint32)) {
+	for s := range t.levels {
+		rows, blocks, lanes := scratch.lists.close(data, s)
+		if rows == 0 {
+			continue
+		}
+		for k := range lanes {
+			lanes[k].drain(rows, blocks, &scratch.counts)
+			each(s, 64*k, rows)
 		}
 	}
 }
