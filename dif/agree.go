@@ -27,6 +27,15 @@ func (e *Evidence) Disagreements() []string {
 	if e.Inputs.CandidatesReceived-excluded != e.Inputs.CandidatesAnalysed {
 		say("inputs: %d received less %d excluded is not %d analysed", e.Inputs.CandidatesReceived, excluded, e.Inputs.CandidatesAnalysed)
 	}
+	for _, g := range e.Inputs.Groupings {
+		n := g.NotStated
+		for _, l := range g.Labels {
+			n += l.N
+		}
+		if n != e.Inputs.CandidatesAnalysed {
+			say("inputs: the labels of %s and the not stated are %d candidates, not the %d analysed", g.Grouping, n, e.Inputs.CandidatesAnalysed)
+		}
+	}
 	if len(e.Comparisons) < len(e.Plan.Comparisons) {
 		say("comparisons: %d stand in the plan, %d in the evidence", len(e.Plan.Comparisons), len(e.Comparisons))
 	}

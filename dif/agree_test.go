@@ -61,4 +61,12 @@ func TestDisagreements(t *testing.T) {
 	if d := e.Disagreements(); len(d) == 0 {
 		t.Error("a lost candidate is not noticed")
 	}
+	e = fresh()
+	if g := e.Inputs.Groupings; len(g) != 1 || len(g[0].Labels) != 2 || g[0].Labels[0] != (LabelCount{"F", 243}) || g[0].Labels[1] != (LabelCount{"M", 73}) {
+		t.Fatalf("labels %+v", g)
+	}
+	e.Inputs.Groupings[0].Labels[1].N++
+	if d := e.Disagreements(); len(d) == 0 {
+		t.Error("a label count too many is not noticed")
+	}
 }

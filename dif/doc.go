@@ -46,6 +46,7 @@
 //
 //   - notice: who may read the document.
 //   - inputs.warnings: what intake noticed, as code and message without values.
+//   - inputs.groupings[]: per compared grouping the analysed candidates by label and the not stated.
 //   - inputs.items[].content_area: as in the items file.
 //   - groups.reference.unmatched, groups.focal.unmatched: candidates at stage-1 levels that
 //     hold nobody of the other group.

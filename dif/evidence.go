@@ -41,6 +41,21 @@ type Inputs struct {
 	Exclusions         []Exclusion   `json:"exclusions"`
 	Items              []ItemSummary `json:"items"`
 	Warnings           []Warning     `json:"warnings"`
+	// Groupings counts the analysed candidates by label, for every grouping that is compared.
+	Groupings []GroupingCount `json:"groupings"`
+}
+
+// GroupingCount counts the analysed candidates of one grouping, plain or crossed.
+type GroupingCount struct {
+	Grouping  string       `json:"grouping"`
+	Labels    []LabelCount `json:"labels"` // every label seen, sorted
+	NotStated int          `json:"not_stated"`
+}
+
+// LabelCount is the number of analysed candidates with one label.
+type LabelCount struct {
+	Label string `json:"label"`
+	N     int    `json:"n"`
 }
 
 // ItemSummary names an item of the audit.

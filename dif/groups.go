@@ -8,10 +8,9 @@ import (
 
 // groupingCodes gives every candidate a label of a grouping, plain or crossed.
 type groupingCodes struct {
-	name      string
-	labels    []string // sorted
-	codes     []int32  // per candidate, index into labels; -1 not stated
-	notStated int
+	name   string
+	labels []string // sorted
+	codes  []int32  // per candidate, index into labels; -1 not stated
 }
 
 // grouping returns the labels of a plain grouping or of a crossing: a candidate has a
@@ -30,9 +29,6 @@ func (d *Data) grouping(name string) (*groupingCodes, error) {
 		g.labels = parts[0].Labels
 		for c, code := range parts[0].Codes {
 			g.codes[c] = int32(code) - 1
-			if code == 0 {
-				g.notStated++
-			}
 		}
 		return g, nil
 	}
@@ -55,7 +51,6 @@ func (d *Data) grouping(name string) (*groupingCodes, error) {
 		}
 		if !stated {
 			mixed[c] = -1
-			g.notStated++
 			continue
 		}
 		mixed[c] = at

@@ -112,6 +112,10 @@ func TestComparisonsAreWrittenOut(t *testing.T) {
 			n[1]++
 		}
 	}
+	e := mustRun(t, openPlan("h+g", "x+a", "y+b", PurifyNone), d)
+	if counted := e.Inputs.Groupings[0]; counted.Labels[0] != (LabelCount{"x+a", n[0]}) || counted.NotStated != n[2] {
+		t.Errorf("labels of the crossing %+v, want x+a %d, not stated %d", counted, n[0], n[2])
+	}
 	if got := [3]int{c.Groups.Reference.N, c.Groups.Focal.N, c.Groups.NotStated}; got != n {
 		t.Errorf("crossing counts %v, want %v", got, n)
 	}

@@ -86,6 +86,9 @@ func (r *runner) run(ctx context.Context) (*Evidence, error) {
 	}
 	r.tell("score", 1, 1)
 	r.excludeWithoutScore(e)
+	for _, name := range names {
+		e.Inputs.Groupings = append(e.Inputs.Groupings, r.countLabels(r.groupings[name]))
+	}
 	r.summaries = make([]Comparison, len(r.comparisons))
 	for _, name := range names {
 		if err := r.auditGrouping(ctx, name); err != nil {
@@ -127,7 +130,7 @@ func (r *runner) excludeWithoutScore(e *Evidence) {
 	if r.variable != MatchExternal {
 		return
 	}
-	missing := func(c int) bool { return math.IsNaN(r.data.External[c]) }
+	missing := func(c int) bool { return !r.analysed(c) }
 	total := 0
 	for c := range r.data.External {
 		if missing(c) {
@@ -163,6 +166,29 @@ func (r *runner) excludeWithoutScore(e *Evidence) {
 	}
 }
 
+// analysed reports whether a candidate has what matching needs.
+func (r *runner) analysed(c int) bool {
+	return r.variable != MatchExternal || !math.IsNaN(r.data.External[c])
+}
+
+// countLabels counts the analysed candidates of a grouping by label.
+func (r *runner) countLabels(g *groupingCodes) GroupingCount {
+	out := GroupingCount{Grouping: g.name, Labels: make([]LabelCount, len(g.labels))}
+	for i, label := range g.labels {
+		out.Labels[i].Label = label
+	}
+	for c, code := range g.codes {
+		switch {
+		case !r.analysed(c):
+		case code < 0:
+			out.NotStated++
+		default:
+			out.Labels[code].N++
+		}
+	}
+	return out
+}
+
 // auditGrouping carries out every comparison of one grouping: one counting pass over
 // all its groups for the first stage, then one pass per comparison over its two groups
 // for the second, shared where the same items were dropped.
@@ -184,7 +210,7 @@ func (r *runner) auditGrouping(ctx context.Context, name string) error {
 	of := make([]int16, r.data.Candidates())
 	for c, code := range codes.codes {
 		of[c] = -1
-		if code < 0 || r.variable == MatchExternal && math.IsNaN(r.data.External[c]) {
+		if code < 0 || !r.analysed(c) {
 			continue
 		}
 		if g, ok := group[codes.labels[code]]; ok {
@@ -203,6 +229,7 @@ func (r *runner) auditGrouping(ctx context.Context, name string) error {
 	if err != nil {
 		return fmt.Errorf("count %s: %w", name, err)
 	}
+	notStated := r.countLabels(codes).NotStated
 	for i, c := range r.comparisons {
 		if c.grouping != name {
 			continue
@@ -211,8 +238,8 @@ func (r *runner) auditGrouping(ctx context.Context, name string) error {
 		if err := k.compare(ctx, c); err != nil {
 			return fmt.Errorf("compare %s %s/%s: %w", c.grouping, c.reference, c.focal, err)
 		}
-		k.out.Groups.NotStated = codes.notStated
-		k.warn(codes.notStated)
+		k.out.Groups.NotStated = notStated
+		k.warn(notStated)
 		r.summaries[i] = k.out
 		r.done++
 		r.tell("compare", r.done, len(r.comparisons))

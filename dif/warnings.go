@@ -125,7 +125,7 @@ func (k *comparing) warn(notStated int) {
 	}
 	m := &k.out.Matching
 	if m.Reliability != nil && *m.Reliability < lowReliability {
-		add(WarnLowReliability, "The matching score has a coefficient alpha of %.2f, below %.2f: group differences in ability leak into the results.", *m.Reliability, lowReliability)
+		add(WarnLowReliability, "The matching score has a coefficient alpha of %.3f, below %.2f: group differences in ability leak into the results.", *m.Reliability, lowReliability)
 	}
 	if d := k.out.Groups.Difference; d != nil && math.Abs(*d) > largeDifference {
 		add(WarnLargeGroupDifference, "The groups differ by %.2f standard deviations in the matching score: matching is less exact.", *d)
@@ -146,8 +146,15 @@ func (k *comparing) warn(notStated int) {
 		}
 	}
 	if unscored > 0 {
-		add(WarnUnscoredItems, "%d items have no key: they are not scored, and candidates are matched on the other %d.", unscored, len(k.matching))
+		add(WarnUnscoredItems, "%s without a key not scored; candidates are matched on %s.", counted(unscored, "item", "items"), counted(len(k.matching), "item", "items"))
 	}
+}
+
+func counted(n int, one, many string) string {
+	if n == 1 {
+		return "1 " + one
+	}
+	return fmt.Sprintf("%d %s", n, many)
 }
 
 // lostShares returns, by group, the share of labelled candidates at matching levels
