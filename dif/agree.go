@@ -36,8 +36,8 @@ func (e *Evidence) Disagreements() []string {
 			say("inputs: the labels of %s and the not stated are %d candidates, not the %d analysed", g.Grouping, n, e.Inputs.CandidatesAnalysed)
 		}
 	}
-	if len(e.Comparisons) < len(e.Plan.Comparisons) {
-		say("comparisons: %d stand in the plan, %d in the evidence", len(e.Plan.Comparisons), len(e.Comparisons))
+	if !e.followsPlan() {
+		say("comparisons: they are not those of the plan")
 	}
 	for i := range e.Comparisons {
 		c := &e.Comparisons[i]
@@ -45,6 +45,45 @@ func (e *Evidence) Disagreements() []string {
 		for _, s := range c.disagreements(e) {
 			say("%s: %s", at, s)
 		}
+	}
+	return out
+}
+
+// followsPlan reports whether the comparisons are those the plan asks for, in order, with
+// FocalEach standing for every other label.
+func (e *Evidence) followsPlan() bool {
+	at := 0
+	for _, want := range e.Plan.Comparisons {
+		taken := 0
+		for ; at < len(e.Comparisons); at++ {
+			c := &e.Comparisons[at]
+			if c.Grouping != want.Grouping || c.Reference != want.Reference || want.Focal != FocalEach && (c.Focal != want.Focal || taken == 1) {
+				break
+			}
+			taken++
+		}
+		if taken == 0 {
+			return false
+		}
+	}
+	return at == len(e.Comparisons)
+}
+
+// disagreements checks the sizes and spread of the groups of a comparison.
+func (g *Groups) disagreements() []string {
+	moments := func(x *Group) scoreMoments {
+		m := scoreMoments{n: x.N, mean: math.NaN(), ss: math.NaN()}
+		if x.Mean != nil && x.SD != nil {
+			m.mean, m.ss = *x.Mean, *x.SD**x.SD*float64(x.N-1)
+		}
+		return m
+	}
+	var out []string
+	if d := number(standardizedDifference(moments(&g.Reference), moments(&g.Focal))); !nearly(d, g.Difference, 1e-6) {
+		out = append(out, "the standardized difference does not follow from means and standard deviations")
+	}
+	if g.Reference.Unmatched > g.Reference.N || g.Focal.Unmatched > g.Focal.N {
+		out = append(out, "more candidates are unmatched than there are")
 	}
 	return out
 }
@@ -92,54 +131,95 @@ func (c *Comparison) disagreements(e *Evidence) []string {
 	if x.Tests != y.Tests || !agree(&x.BOrC, &y.BOrC) || !agree(&x.C, &y.C) || !agree(&x.Significant, &y.Significant) {
 		say("the numbers expected by chance do not follow from the standard errors")
 	}
-	for _, s := range c.Matching.disagreements(e.Plan, e.Inputs.Items) {
-		say("%s", s)
-	}
-	return out
+	out = append(out, c.Groups.disagreements()...)
+	return append(out, c.stagesDisagree(e)...)
 }
 
-// disagreements checks that the items left out of the matching score are those the first
-// stage classed C.
-func (m *Matching) disagreements(plan Plan, items []ItemSummary) []string {
-	if len(m.Stages) == 0 {
-		return []string{"matching: no stage is stored"}
+// stagesDisagree checks the stages of purification: their number, the items left out of
+// the matching score, the letters of the first, and the last against the findings.
+func (c *Comparison) stagesDisagree(e *Evidence) []string {
+	m := &c.Matching
+	stages := 1
+	if e.Plan.Matching.Purification == PurifyTwoStage && m.Variable != MatchExternal {
+		stages = 2
 	}
-	if len(m.Stages[0].Items) != len(items) {
-		return []string{"matching: a stage does not hold every item"}
+	if want := e.Plan.Matching.Variable; want != m.Variable && !(want == MatchAuto && (m.Variable == MatchTotal || m.Variable == MatchTotalWithinSet)) {
+		return []string{"matching: the variable is not the one the plan asks for"}
 	}
-	var must, may []string
+	if len(m.Stages) != stages {
+		return []string{fmt.Sprintf("matching: %d stages are stored, the plan asks for %d", len(m.Stages), stages)}
+	}
+	for i, s := range m.Stages {
+		if s.Stage != i+1 || len(s.Items) != len(c.Items) {
+			return []string{"matching: a stage does not hold every item"}
+		}
+	}
+	var out []string
+	var large, limitless []string
+	matching := 0
 	for i, s := range m.Stages[0].Items {
-		if items[i].Role == RolePretest {
-			continue
+		if s.Detail == nil || *s.Detail != DetailNoKey {
+			if e.Inputs.Items[i].Role != RolePretest {
+				matching++
+			}
 		}
-		var letter string
+		var letter *string
 		if s.Delta != nil && s.DeltaSE != nil && s.PValue != nil {
-			letter, _ = Letter(*s.Delta, *s.DeltaSE, *s.PValue, plan.Criteria.ClassAlpha)
+			if l, ok := Letter(*s.Delta, *s.DeltaSE, *s.PValue, e.Plan.Criteria.ClassAlpha); ok {
+				letter = &l
+			}
 		}
-		if letter != "" && (s.ComputedClass == nil || letter != *s.ComputedClass) {
-			return []string{fmt.Sprintf("matching: the stage-1 letter of %s does not follow from its statistics", s.Item)}
+		if !equal(letter, s.ComputedClass) {
+			out = append(out, fmt.Sprintf("matching: the stage-1 letter of %s does not follow from its statistics", s.Item))
 		}
-		limitless := s.Detail != nil && *s.Detail == DetailInfiniteOddsRatio
-		if isC(letter) {
-			must = append(must, s.Item)
+		switch {
+		case e.Inputs.Items[i].Role == RolePretest:
+		case letter != nil && isC(*letter):
+			large = append(large, s.Item)
+		case s.Detail != nil && *s.Detail == DetailInfiniteOddsRatio:
+			limitless = append(limitless, s.Item)
 		}
-		if isC(letter) || limitless {
-			may = append(may, s.Item)
-		}
+	}
+	refused := false
+	for _, w := range c.Warnings {
+		refused = refused || w.Code == WarnPurificationRefused
+	}
+	last := m.Stages[len(m.Stages)-1]
+	if !slices.Equal(last.RemovedItems, m.RemovedItems) || len(m.Stages[0].RemovedItems) > 0 {
+		out = append(out, "matching: the items left out are not those of the last stage")
 	}
 	for _, item := range m.RemovedItems {
-		if !slices.Contains(may, item) {
-			return []string{fmt.Sprintf("matching: %s was left out without having been classed C", item)}
+		if !slices.Contains(large, item) && !slices.Contains(limitless, item) {
+			out = append(out, fmt.Sprintf("matching: %s was left out without having been classed C", item))
 		}
 	}
-	if len(m.RemovedItems) > 0 {
-		for _, item := range must {
+	switch {
+	case stages == 1 || refused && len(m.RemovedItems) == 0:
+	case len(m.RemovedItems) > 0 && !mayRemove(matching, len(m.RemovedItems)):
+		out = append(out, "matching: too many items were left out")
+	default:
+		for _, item := range large {
 			if !slices.Contains(m.RemovedItems, item) {
-				return []string{fmt.Sprintf("matching: %s was classed C and not left out", item)}
+				out = append(out, fmt.Sprintf("matching: %s was classed C and not left out", item))
 			}
 		}
 	}
-	return nil
+	for i, s := range last.Items {
+		f := &c.Items[i]
+		mh := f.MantelHaenszel()
+		if mh == nil {
+			continue
+		}
+		chi := mh.ChiSquare
+		if e.Plan.Criteria.ContinuityCorrection {
+			chi = mh.ChiSquareCorrected
+		}
+		if s.Item != f.Item || !agree(s.Delta, mh.Delta) || !agree(s.DeltaSE, mh.DeltaSE) || !agree(s.ChiSquare, chi) ||
+			!agree(s.PValue, f.Classification.PValue) || !equal(s.ComputedClass, f.Classification.ComputedClass) {
+			out = append(out, fmt.Sprintf("matching: the last stage and the finding differ for %s", f.Item))
+		}
+	}
+	return out
 }
 
 // disagreements checks one finding.
@@ -159,10 +239,13 @@ func (f *Finding) disagreements(item *ItemSummary, plan Plan) []string {
 	if matched[0] > f.NReference || matched[1] > f.NFocal {
 		say("more candidates are matched than counted")
 	}
-	if item.MaxScore == 1 && k.Detail != nil && *k.Detail == DetailNoKey && len(f.Results) > 0 {
+	if k.Detail != nil && *k.Detail == DetailNoKey && len(f.Results) > 0 {
 		say("an item without a key has statistics")
 	}
-	if t, ok := f.table(); item.MaxScore == 1 && ok {
+	if len(f.Results) > 0 && item.MaxScore > 1 {
+		say("an item with more than one point has statistics of binary items")
+	}
+	if t, ok := f.table(); len(f.Results) > 0 && ok {
 		c := t.cover()
 		if c.informative != f.StrataInformative || c.informativeN != f.NInformative {
 			say("the informative strata do not follow from the strata")
@@ -172,10 +255,27 @@ func (f *Finding) disagreements(item *ItemSummary, plan Plan) []string {
 				say("%s does not follow from the strata", r.Method)
 			}
 		}
-	} else if item.MaxScore == 1 {
+		c.n = [2]int{f.NReference, f.NFocal}
+		if w := f.warnings(&c, plan.Criteria); !slices.Equal(w, f.Warnings) {
+			say("the warnings do not follow from the statistics")
+		}
+		if !nearly(f.DifficultyReference, number(normalDelta(value64(f.PReference))), 1e-9) || !nearly(f.DifficultyFocal, number(normalDelta(value64(f.PFocal))), 1e-9) {
+			say("the difficulties do not follow from the proportions correct")
+		}
+	} else if len(f.Results) > 0 {
 		say("a stratum's mean is not a number of right answers over its candidates")
 	}
+	for g, p := range [2]*float64{f.PReference, f.PFocal} {
+		n := [2]int{f.NReference, f.NFocal}[g]
+		points := value64(p) * float64(n*max(1, item.MaxScore))
+		if (p == nil) != (n == 0) || n > 0 && !(math.Abs(points-math.Round(points)) < 1e-6*math.Max(1, points)) {
+			say("a mean score is not a number of points over its candidates")
+		}
+	}
 	if mh := f.MantelHaenszel(); mh != nil {
+		if k.Basis == nil || *k.Basis != idMantelHaenszel {
+			say("the basis of the letter is not the method that gave it")
+		}
 		p := mh.PValue
 		if plan.Criteria.ContinuityCorrection {
 			p = mh.PValueCorrected
@@ -267,11 +367,22 @@ func sameColumns(a, b Result) bool {
 	return true
 }
 
-func agree(a, b *float64) bool {
+func agree(a, b *float64) bool { return nearly(a, b, agreement) }
+
+// nearly reports whether both numbers are absent, or differ by no more than a relative
+// tolerance.
+func nearly(a, b *float64, relative float64) bool {
 	if a == nil || b == nil {
 		return a == nil && b == nil
 	}
-	return *a == *b || math.Abs(*a-*b) <= agreement*math.Max(math.Abs(*a), math.Abs(*b))
+	return *a == *b || math.Abs(*a-*b) <= relative*math.Max(math.Abs(*a), math.Abs(*b))
+}
+
+func value64(p *float64) float64 {
+	if p == nil {
+		return math.NaN()
+	}
+	return *p
 }
 
 func equal(a, b *string) bool {

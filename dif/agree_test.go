@@ -45,6 +45,20 @@ func TestDisagreements(t *testing.T) {
 		{"not removed", func(c *Comparison) { c.Matching.RemovedItems = c.Matching.RemovedItems[:1] }, "S2DoCurse"},
 		{"stage", func(c *Comparison) { c.Matching.Stages[0].Items[3].ComputedClass = text(ClassCMinus) }, "stage-1"},
 		{"items", func(c *Comparison) { c.Items = c.Items[1:] }, "finding"},
+		{"max score", func(c *Comparison) { c.Matching.Variable = MatchExternal }, "variable"},
+		{"names swapped", func(c *Comparison) { c.Reference, c.Focal = c.Focal, c.Reference }, "plan"},
+		{"removed emptied", func(c *Comparison) {
+			c.Matching.RemovedItems, c.Matching.Stages[1].RemovedItems = []string{}, []string{}
+		}, "not left out"},
+		{"stage dropped", func(c *Comparison) { c.Matching.Stages = c.Matching.Stages[:1] }, "stages"},
+		{"stage 2", func(c *Comparison) { *c.Matching.Stages[1].Items[7].Delta += 0.1 }, "last stage"},
+		{"warnings stripped", func(c *Comparison) { c.Items[0].Warnings = []Warning{} }, "warnings"},
+		{"difference", func(c *Comparison) { *c.Groups.Difference += 0.01 }, "standardized difference"},
+		{"mean", func(c *Comparison) { *c.Groups.Focal.Mean += 0.5 }, "standardized difference"},
+		{"proportion", func(c *Comparison) { *c.Items[4].PFocal += 0.001 }, "mean score"},
+		{"difficulty", func(c *Comparison) { *c.Items[4].DifficultyFocal += 0.001 }, "difficulties"},
+		{"n", func(c *Comparison) { c.Items[4].NReference = 10000 }, "mean score"},
+		{"basis", func(c *Comparison) { c.Items[4].Classification.Basis = text("polytomous") }, "basis"},
 		{"reason", func(c *Comparison) {
 			c.Items[0].Classification.Class, c.Items[0].Classification.Reason = nil, text(ReasonTooFewCandidates)
 		}, "reason"},
@@ -55,6 +69,11 @@ func TestDisagreements(t *testing.T) {
 		if !strings.Contains(d, c.want) {
 			t.Errorf("%s changed: %q does not mention %q", c.name, d, c.want)
 		}
+	}
+	forged := fresh()
+	forged.Inputs.Items[5].MaxScore = 2 // must not switch the checks of the item off
+	if d := forged.Disagreements(); len(d) == 0 {
+		t.Error("a changed maximum score is not noticed")
 	}
 	e := fresh()
 	e.Inputs.CandidatesAnalysed--

@@ -1,5 +1,7 @@
 package dif
 
+import "slices"
+
 // arrangement holds the packed rows of the labelled candidates of one grouping,
 // brought together by group, presented set and completeness, so that a counting
 // pass reads them in runs.
@@ -48,31 +50,48 @@ func (p *packed) arrange(groupOf []int16, groups int) *arrangement {
 	}
 	places := len(a.sets) + 1
 	a.sizes = make([]int, places)
-	kind := func(c int, g int16) int {
-		k := 2 * (int(g)*places + place[p.set[c]])
-		if p.gaps[c] {
-			k++
+	// The kind of a row orders it by group, place and completeness. Kinds that occur get
+	// a number, so that thousands of groups and sets need no table of all their pairs.
+	kindOf := make([]int32, len(groupOf))
+	number := map[int]int32{}
+	var kinds []int
+	last, lastNumber := -1, int32(0)
+	for c, g := range groupOf {
+		if g < 0 {
+			continue
 		}
-		return k
+		kind := 2 * (int(g)*places + place[p.set[c]])
+		if p.gaps[c] {
+			kind++
+		}
+		if kind != last {
+			n, ok := number[kind]
+			if !ok {
+				n = int32(len(kinds))
+				number[kind] = n
+				kinds = append(kinds, kind)
+			}
+			last, lastNumber = kind, n
+		}
+		kindOf[c] = lastNumber
 	}
-	starts := make([]int, 2*groups*places)
+	next := make([]int, len(kinds)) // candidates of the kind, then the place of its next row
 	for c, g := range groupOf {
 		if g >= 0 {
-			starts[kind(c, g)]++
+			next[kindOf[c]]++
 		}
 	}
 	total, incomplete := 0, 0
-	for k, n := range starts {
-		if n > 0 {
-			r := run{group: k / 2 / places, place: k / 2 % places, from: total, to: total + n, answered: -1}
-			if k%2 == 1 {
-				r.answered = incomplete
-				incomplete += n
-			}
-			a.runs = append(a.runs, r)
-			a.sizes[r.place] += n
+	for _, k := range slices.Sorted(slices.Values(kinds)) {
+		n := next[number[k]]
+		r := run{group: k / 2 / places, place: k / 2 % places, from: total, to: total + n, answered: -1}
+		if k%2 == 1 {
+			r.answered = incomplete
+			incomplete += n
 		}
-		starts[k] = total
+		a.runs = append(a.runs, r)
+		a.sizes[r.place] += n
+		next[number[k]] = total
 		total += n
 	}
 	w := p.words
@@ -80,9 +99,8 @@ func (p *packed) arrange(groupOf []int16, groups int) *arrangement {
 	a.rows = make([]uint64, total*w)
 	for c, g := range groupOf {
 		if g >= 0 {
-			k := kind(c, g)
-			i := starts[k]
-			starts[k]++
+			i := next[kindOf[c]]
+			next[kindOf[c]]++
 			a.order[i] = int32(c)
 			copy(a.rows[i*w:(i+1)*w], p.rows[c*w:(c+1)*w])
 		}

@@ -11,12 +11,13 @@ import (
 type comparing struct {
 	*runner
 	*tabulator
-	first    *tabulation // tables of the stage-1 score
-	reported *tabulation // tables the findings come from
-	groups   [2]int      // reference and focal group of the arrangement
-	removed  []int       // items left out of the reported matching score
-	refused  bool        // purification would have left too few items
-	lost     [2]int      // candidates at levels without the other group, stage 1
+	first    *pairing // tables of the stage-1 score
+	reported *pairing // tables the findings come from
+	groups   [2]int   // reference and focal group of the arrangement
+	removed  []int    // items left out of the reported matching score
+	refused  bool     // purification would have left too few items
+	lost     [2]int   // candidates at levels without the other group, stage 1
+	noScore  [2]int   // labelled candidates without the external score
 	moments  [2]scoreMoments
 	out      Comparison
 }
@@ -25,7 +26,7 @@ type comparing struct {
 func (k *comparing) compare(ctx context.Context, c labelled) error {
 	k.out = Comparison{Grouping: c.grouping, Reference: c.reference, Focal: c.focal, Warnings: []Warning{}}
 	for g := range k.moments {
-		k.moments[g] = k.groupMoments(k.first, k.groups[g])
+		k.moments[g] = k.groupMoments(k.first.tabulation, k.groups[g])
 	}
 	k.lost = k.first.unmatched(k.groups[0], k.groups[1])
 	k.out.Groups = Groups{
@@ -35,7 +36,8 @@ func (k *comparing) compare(ctx context.Context, c labelled) error {
 	}
 	k.out.Matching = Matching{
 		Variable: k.variable, Levels: k.plan.Matching.Levels, RemovedItems: []string{}, Stages: []Stage{}, Sets: k.sets(),
-		Reliability: number(k.reliability(k.first, k.matching, k.groups)),
+		Reliability:      number(k.reliability(k.first.tabulation, k.matching, k.groups)),
+		ScoreCorrelation: number(k.scoreCorrelation(k.first.mask, k.groups)),
 	}
 	if err := k.purify(ctx); err != nil {
 		return err
@@ -51,7 +53,7 @@ func (k *comparing) compare(ctx context.Context, c labelled) error {
 
 func (k *comparing) group(g int) Group {
 	m := k.moments[g]
-	return Group{N: m.n, Mean: number(m.mean), SD: number(m.sd()), Unmatched: k.lost[g]}
+	return Group{N: m.n, Mean: number(m.mean), SD: number(m.sd()), Unmatched: k.lost[g], NoScore: k.noScore[g]}
 }
 
 // sets describes the presented sets that hold candidates of both groups, where
@@ -108,10 +110,11 @@ func (k *comparing) purify(ctx context.Context) error {
 		for _, i := range keep {
 			in[i] = true
 		}
-		k.reported, err = k.tabulate(ctx, k.packed.mask(func(i int) bool { return in[i] }), k.groups[:])
+		second, err := k.tabulate(ctx, k.packed.mask(func(i int) bool { return in[i] }), k.groups[:])
 		if err != nil {
 			return err
 		}
+		k.reported = second.pair(k.arrangement, k.groups)
 	}
 	k.removed = large
 	k.out.Matching.RemovedItems = k.names(large)
@@ -129,11 +132,11 @@ func (k *comparing) names(items []int) []string {
 
 // stage classes every item under one matching score, records it, and returns the
 // matching items that the next score would leave out.
-func (k *comparing) stage(ctx context.Context, number int, tab *tabulation, removed []int) ([]int, error) {
+func (k *comparing) stage(ctx context.Context, number int, tables *pairing, removed []int) ([]int, error) {
 	items := make([]StageItem, len(k.data.Items))
 	leaves := make([]bool, len(items))
 	err := k.eachItem(ctx, func(i int, b *itemTabler) {
-		items[i], leaves[i] = k.stageItem(i, b.of(tab, k.arrangement, i, k.groups[0], k.groups[1]))
+		items[i], leaves[i] = k.stageItem(i, b.of(tables, i))
 	})
 	if err != nil {
 		return nil, err

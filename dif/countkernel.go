@@ -9,12 +9,12 @@ package dif
 // Hacker's Delight; its use per position by Klarqvist, Mula and Lemire.
 
 const (
-	// laneRows is how many words are folded at a time, and how many results
-	// of that are folded again.
-	laneRows = 64
-
-	// foldStep divides the number of words in a fold.
+	// foldStep is how many words are folded at a time.
 	foldStep = 16
+
+	// laneCarries is how many results of folding words collect before they
+	// are folded themselves.
+	laneCarries = 64
 
 	// counterBits is the width of a bit-sliced counter: that of the uint32
 	// tables, so a counter overflows only where its table would.
@@ -24,28 +24,29 @@ const (
 // countLane counts the bits of one word position of the rows of one score
 // level. Bit i of planes[k] is bit k of the count of bit position i.
 type countLane struct {
-	planes  [counterBits]uint64 // bit-sliced counters
-	carries [laneRows]uint64    // results of weight 64 not yet folded
+	planes [counterBits]uint64 // bit-sliced counters
+
+	// carries are words of weight foldStep not yet folded. Collecting them
+	// matters: how far a single carry ripples is a branch that no processor
+	// can foresee. Room is left for those of one more call of foldWords.
+	carries [2 * laneCarries]uint64
+	_       [8]uint64 // an odd number of cache lines spreads the lanes over the cache
 }
 
-// inOrder are the positions of words that follow each other.
-var inOrder = func() (at [laneRows]uint32) {
+// inOrder are the places of words that follow each other.
+var inOrder = func() (at [laneCarries]uint32) {
 	for i := range at {
 		at[i] = uint32(i)
 	}
 	return at
 }()
 
-// foldWords adds the words at some places of data to six bit planes of weight
-// 1, 2, ..., 32; what no longer fits is the returned word of weight 64. There
-// are at most laneRows places, a multiple of foldStep.
-func foldWords(planes *[6]uint64, data []uint64, places []uint32) uint64 {
-	var sixteens [laneRows / foldStep]uint64
+// foldWords adds the words at some places of data to four bit planes of weight
+// 1, 2, 4 and 8; what no longer fits is put into carries, one word of weight 16
+// for every 16 places. The places after the last 16 are not looked at.
+func foldWords(planes *[4]uint64, data []uint64, places []uint32, carries *[laneCarries]uint64) {
 	ones, twos, fours, eights := planes[0], planes[1], planes[2], planes[3]
-	for i := range sixteens {
-		if len(places) < foldStep {
-			break
-		}
+	for i := 0; len(places) >= foldStep; i++ {
 		at := (*[foldStep]uint32)(places)
 		var twosA, twosB, foursA, foursB, eightsA, eightsB uint64
 		twosA, ones = carrySave(data[at[0]], data[at[1]], ones)
@@ -62,56 +63,47 @@ func foldWords(planes *[6]uint64, data []uint64, places []uint32) uint64 {
 		twosB, ones = carrySave(data[at[14]], data[at[15]], ones)
 		foursB, twos = carrySave(twosA, twosB, twos)
 		eightsB, fours = carrySave(foursA, foursB, fours)
-		sixteens[i], eights = carrySave(eightsA, eightsB, eights)
+		carries[i%laneCarries], eights = carrySave(eightsA, eightsB, eights)
 		places = places[foldStep:]
 	}
 	planes[0], planes[1], planes[2], planes[3] = ones, twos, fours, eights
-	a, sum := carrySave(sixteens[0], sixteens[1], planes[4])
-	b, sum := carrySave(sixteens[2], sixteens[3], sum)
-	carry, high := carrySave(a, b, planes[5])
-	planes[4], planes[5] = sum, high
-	return carry
 }
 
-// fold adds the words at the places of data. The block number says how many
-// folds came before this one.
-func (l *countLane) fold(data []uint64, places []uint32, block uint32) {
-	l.carries[block%laneRows] = foldWords((*[6]uint64)(l.planes[:]), data, places)
-	if block%laneRows == laneRows-1 {
-		l.foldCarries(laneRows)
+// foldCarries adds carries at from, ..., to-1, at most laneCarries, to the
+// counters.
+func (l *countLane) foldCarries(from, to int) {
+	var eights [laneCarries]uint64
+	whole := (to - from + foldStep - 1) / foldStep * foldStep
+	if from+whole > to {
+		clear(l.carries[to : from+whole])
 	}
-}
-
-// foldCarries adds the first carries of weight 64 to the counters. Collecting
-// them first matters: how far a single carry ripples is a branch that no
-// processor can foresee.
-func (l *countLane) foldCarries(carries int) {
-	whole := (carries + foldStep - 1) / foldStep * foldStep
-	clear(l.carries[carries:whole])
-	carry := foldWords((*[6]uint64)(l.planes[6:]), l.carries[:], inOrder[:whole])
-	for k := 12; k < counterBits && carry != 0; k++ {
+	foldWords((*[4]uint64)(l.planes[4:]), l.carries[from:], inOrder[:whole], &eights)
+	a, p := carrySave(eights[0], eights[1], l.planes[8])
+	b, p := carrySave(eights[2], eights[3], p)
+	l.planes[8] = p
+	carry, p := carrySave(a, b, l.planes[9])
+	l.planes[9] = p
+	for k := 10; k < counterBits && carry != 0; k++ {
 		l.planes[k], carry = l.planes[k]^carry, l.planes[k]&carry
 	}
 }
 
-// drain sets counts to the counts of the lane after rows rows and some number
-// of folds, and empties the lane.
-func (l *countLane) drain(rows, blocks uint32, counts *[64]uint32) {
-	if r := int(blocks % laneRows); r != 0 {
-		l.foldCarries(r)
-	}
+// drain sets counts to the counts of the lane after rows rows and empties the
+// lane.
+func (l *countLane) drain(rows uint32, counts *[64]uint32) {
 	planes := l.planes
 	l.planes = [counterBits]uint64{}
-	width := uint(counterBits)
-	for width > 8 && rows>>(width/2) == 0 {
-		width /= 2
-	}
-	transposePlanes(planes[:width])
-	for i, w := range planes[:width] {
-		for at := uint(i); at < 64; at += width {
-			counts[at] = uint32(w & (1<<width - 1))
-			w >>= width
+	if rows < 1<<16 {
+		transposePlanes(planes[:16])
+		for i, w := range planes[:16] {
+			counts[i], counts[i+16] = uint32(w&0xffff), uint32(w>>16&0xffff)
+			counts[i+32], counts[i+48] = uint32(w>>32&0xffff), uint32(w>>48)
 		}
+		return
+	}
+	transposePlanes(planes[:])
+	for i, w := range planes {
+		counts[i], counts[i+32] = uint32(w), uint32(w>>32)
 	}
 }
 

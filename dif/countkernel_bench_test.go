@@ -258,7 +258,7 @@ func BenchmarkMHTables(b *testing.B) {
 		}
 		// The byte loop before the pass and before the stream leaves the
 		// caches in the same state for both: without the packed rows.
-		t := medianTimes(15, byteLoop, plain.run, byteLoop, func() { benchSink ^= streamWords(d.packed) })
+		t := medianTimes(25, byteLoop, plain.run, byteLoop, func() { benchSink ^= streamWords(d.packed) })
 		for b.Loop() {
 			plain.run()
 		}

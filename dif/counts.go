@@ -130,9 +130,8 @@ const countBlock = maxBatch
 // countScratch is the working memory of count, kept between calls. Its zero
 // value is ready; one goroutine uses it at a time.
 type countScratch struct {
-	level  [countBlock]int32
-	lists  countLists
-	counts [64]uint32 // of the lane being drained
+	level [countBlock]int32
+	lists countLists
 }
 
 // A run is counted bit by bit when it has fewer than sparseRows rows per score
@@ -164,64 +163,52 @@ func (t *levelCounts) countLanes(run countRun, scratch *countScratch) {
 		t.countLanes(run.part(rows/2, rows), scratch)
 		return
 	}
-	t.fill(run, run.rows, scratch)
-	t.drain(run.rows, scratch, func(level, plane int, rows uint32) {
-		if plane == 0 {
-			t.n[level] += rows
-		}
-		right := t.rightOf(level)
-		right = right[min(plane, t.planes):min(plane+64, t.planes)]
-		for i := range right {
-			right[i] += scratch.counts[i]
-		}
-	})
-	if run.answered == nil {
-		return
-	}
-	t.needMissing()
-	t.fill(run, run.answered, scratch)
-	t.drain(run.answered, scratch, func(level, plane int, rows uint32) {
-		missing := t.missingOf(level)
-		missing = missing[min(plane, t.planes):min(plane+64, t.planes)]
-		for i := range missing {
-			missing[i] += rows - scratch.counts[i]
-		}
-	})
-}
-
-// fill counts data, which is the rows of the run or what they answered, by the
-// level of the row.
-func (t *levelCounts) fill(run countRun, data []uint64, scratch *countScratch) {
-	lists, size := &scratch.lists, run.size()
-	lists.reset(size, run.words, t.levels)
-	for from := 0; from < size; from += lists.batch {
+	lists := &scratch.lists
+	lists.reset(run, t.levels)
+	for from, size := 0, run.size(); from < size; from += lists.batch {
 		to := min(from+lists.batch, size)
+		rows, first := run.rows[from*run.words:to*run.words], from*run.words
 		switch {
 		case run.level == nil && run.words == 1:
-			lists.addScored1(run.rows, from, to, run.mask[0])
+			lists.addScored1(rows, first, run.mask[0])
 		case run.level == nil && run.words == 2:
-			lists.addScored2(run.rows, from, to, run.mask[0], run.mask[1])
+			lists.addScored2(rows, first, run.mask[0], run.mask[1])
 		default:
 			level := scratch.level[:to-from]
 			run.score(level, from)
-			lists.add(level, from*run.words)
+			lists.add(level, first)
 		}
-		lists.fold(data)
+		lists.fold()
+	}
+	if run.answered != nil {
+		t.needMissing()
+	}
+	for s := range t.levels {
+		if rows, lanes := lists.close(s); rows > 0 {
+			t.n[s] += rows
+			t.drain(s, rows, lanes, run.words)
+		}
 	}
 }
 
-// drain empties the lists. For every word of every level that has rows it puts
-// the counts into scratch.counts and calls each with the level, the first plane
-// of the word and the number of rows.
-func (t *levelCounts) drain(data []uint64, scratch *countScratch, each func(level, plane int, rows uint32)) {
-	for s := range t.levels {
-		rows, blocks, lanes := scratch.lists.close(data, s)
-		if rows == 0 {
+// drain adds the counts of a level's lanes to the table: words lanes of the
+// rows, then as many of what was answered, if anything is missing.
+func (t *levelCounts) drain(level int, rows uint32, lanes []countLane, words int) {
+	var counts [64]uint32
+	for k := range lanes {
+		lanes[k].drain(rows, &counts)
+		plane := k % words * 64
+		from, to := min(plane, t.planes), min(plane+64, t.planes)
+		if k < words {
+			right := t.rightOf(level)[from:to]
+			for i, n := range counts[:len(right)] {
+				right[i] += n
+			}
 			continue
 		}
-		for k := range lanes {
-			lanes[k].drain(rows, blocks, &scratch.counts)
-			each(s, 64*k, rows)
+		missing := t.missingOf(level)[from:to]
+		for i, n := range counts[:len(missing)] {
+			missing[i] += rows - n
 		}
 	}
 }

@@ -185,6 +185,119 @@ func TestCountsOfFullRows(t *testing.T) {
 	}
 }
 
+// Sizes around those of the batches a run is sorted in: a batch is at least 64
+// rows, about an eighth of the run, at most maxBatch and, with many levels, less.
+func TestCountsAroundBatches(t *testing.T) {
+	t.Parallel()
+	for _, test := range []struct{ size, planes, levels int }{
+		{8*64 - 1, 100, 0}, {8 * 64, 100, 0}, {8*64 + 1, 100, 0}, {8*65 + 3, 100, 0},
+		{8*1000 + 7, 40, 0}, {8*1024 + 1, 128, 0},
+		{8*maxBatch - 1, 20, 0}, {8 * maxBatch, 20, 0}, {8*maxBatch + maxBatch + 1, 20, 0},
+		{8 * maxBatch, 20, 3}, {9*maxBatch + 17, 12, 300},
+		{40_000, 10, 4000}, // few places a level
+		{5000, 150, 1}, {5000, 70, 1},
+	} {
+		for _, gaps := range []bool{false, true} {
+			t.Run(fmt.Sprintf("%d rows/%d planes/%d levels/gaps %t", test.size, test.planes, test.levels, gaps), func(t *testing.T) {
+				t.Parallel()
+				random := rand.New(rand.NewPCG(uint64(test.size), uint64(test.planes)))
+				supplied, levels := test.levels > 0, test.levels
+				if !supplied {
+					levels = test.planes + 1
+				}
+				run := randomRun(random, test.size, test.planes, supplied, gaps, levels)
+				want := newLevelCounts(levels, test.planes)
+				countBitByBit(want, run)
+				got := newLevelCounts(levels, test.planes)
+				got.countLanes(run, new(countScratch))
+				sameCounts(t, got, want)
+			})
+		}
+	}
+}
+
+// The number of rows of a level, between 0 and a few folds, whatever is left
+// over of it; the other level of the table has one row more each time.
+func TestCountsOfLeftovers(t *testing.T) {
+	t.Parallel()
+	random := rand.New(rand.NewPCG(3, 14))
+	scratch := new(countScratch)
+	for _, planes := range []int{64, 100, 200} {
+		for size := range 4*foldStep + 2 {
+			run := randomRun(random, 2*size+1, planes, true, size%2 == 0, 2)
+			for i := range run.level {
+				run.level[i] = int32(i % 2)
+			}
+			want := newLevelCounts(2, planes)
+			countBitByBit(want, run)
+			got := newLevelCounts(2, planes)
+			got.countLanes(run, scratch)
+			sameCounts(t, got, want)
+		}
+	}
+}
+
+// Every level has one row.
+func TestCountsOfLoneRows(t *testing.T) {
+	t.Parallel()
+	random := rand.New(rand.NewPCG(2, 71))
+	for _, words := range []int{1, 2, 3} {
+		planes := 64 * words
+		run := randomRun(random, planes+1, planes, false, false, 0)
+		run.mask = benchMask(planes)
+		for i := range planes + 1 { // row i has i bits
+			clear(run.rows[i*words : (i+1)*words])
+			for _, p := range random.Perm(planes)[:i] {
+				run.rows[i*words+p/64] |= 1 << (p % 64)
+			}
+		}
+		want := newLevelCounts(planes+1, planes)
+		countBitByBit(want, run)
+		got := newLevelCounts(planes+1, planes)
+		got.countLanes(run, new(countScratch))
+		sameCounts(t, got, want)
+	}
+}
+
+// All rows equal: each count is 0 or the number of rows, which at 70,000 no
+// longer fits 16 bits.
+func TestCountsOfEqualRows(t *testing.T) {
+	t.Parallel()
+	const size = 70_000
+	row := []uint64{0x0123456789abcdef, 0x0f1e2d3c4b5a6978, 0xf0}
+	for words := 1; words <= len(row); words++ {
+		planes := 64 * words
+		run := countRun{words: words, mask: benchMask(planes)}
+		for range size {
+			run.rows = append(run.rows, row[:words]...)
+		}
+		want := newLevelCounts(planes+1, planes)
+		countBitByBit(want, run)
+		got := newLevelCounts(planes+1, planes)
+		got.count(run, new(countScratch))
+		sameCounts(t, got, want)
+	}
+}
+
+// A level the table does not have is an error of the caller, not a count.
+func TestCountsPanicOutsideTheTable(t *testing.T) {
+	t.Parallel()
+	for _, words := range []int{1, 2, 3} {
+		run := countRun{rows: make([]uint64, 100*words), words: words, mask: benchMask(64 * words)}
+		for i := range run.rows {
+			run.rows[i] = 0b111
+		}
+		func() {
+			defer func() {
+				if recover() == nil {
+					t.Errorf("%d words: level %d of a table of 3 levels was counted", words, 3*words)
+				}
+			}()
+			newLevelCounts(3, 64*words).countLanes(run, new(countScratch))
+		}()
+	}
+}
+
 // One scratch serves runs of different widths and tables of different sizes.
 func TestCountScratchIsReused(t *testing.T) {
 	t.Parallel()

@@ -92,7 +92,8 @@ type Group struct {
 	N         int      `json:"n"` // candidates with the label and a matching score
 	Mean      *float64 `json:"mean"`
 	SD        *float64 `json:"sd"`
-	Unmatched int      `json:"unmatched"` // of N, at matching levels that hold nobody of the other group
+	Unmatched int      `json:"unmatched"`     // of N, at matching levels that hold nobody of the other group
+	NoScore   int      `json:"without_score"` // with the label and without the external score they were to be matched on; not in N
 }
 
 // Matching describes how candidates were matched.
@@ -102,7 +103,10 @@ type Matching struct {
 	Reliability  *float64       `json:"reliability"` // coefficient alpha of the stage-1 score, both groups pooled
 	RemovedItems []string       `json:"removed_items"`
 	Stages       []Stage        `json:"stages"`
-	Sets         []PresentedSet `json:"sets,omitempty"` // where candidates are matched within the set presented
+	Sets         []PresentedSet `json:"sets,omitempty"` // where candidates are matched within the set presented, or the form
+	// ScoreCorrelation is the correlation of an external score with the total of the
+	// scored items, over both groups; nil for another matching variable.
+	ScoreCorrelation *float64 `json:"score_correlation,omitempty"`
 }
 
 // PresentedSet is one set of items that candidates of the comparison were presented.
@@ -314,13 +318,13 @@ func (f *Finding) Standardization() *StandardizationResult {
 // MarshalJSON writes the finding as one object: counts, a key per method,
 // classification, warnings, then the extras.
 func (f Finding) MarshalJSON() ([]byte, error) {
-	head, err := json.Marshal(f.FindingCounts)
+	head, err := plainJSON(f.FindingCounts)
 	if err != nil {
 		return nil, err
 	}
 	b := bytes.NewBuffer(head[:len(head)-1])
 	part := func(key string, v any) error {
-		j, err := json.Marshal(v)
+		j, err := plainJSON(v)
 		if err != nil {
 			return fmt.Errorf("%s: %w", key, err)
 		}
@@ -332,19 +336,27 @@ func (f Finding) MarshalJSON() ([]byte, error) {
 			return nil, err
 		}
 	}
-	if err := part("classification", f.Classification); err != nil {
+	if err := errors.Join(part("classification", f.Classification), part("warnings", f.Warnings)); err != nil {
 		return nil, err
 	}
-	if err := part("warnings", f.Warnings); err != nil {
-		return nil, err
-	}
-	tail, err := json.Marshal(f.FindingExtras)
+	tail, err := plainJSON(f.FindingExtras)
 	if err != nil {
 		return nil, err
 	}
 	b.WriteByte(',')
 	b.Write(tail[1:])
 	return b.Bytes(), nil
+}
+
+// plainJSON marshals without escaping for HTML, as Encode does.
+func plainJSON(v any) ([]byte, error) {
+	var b bytes.Buffer
+	enc := json.NewEncoder(&b)
+	enc.SetEscapeHTML(false)
+	if err := enc.Encode(v); err != nil {
+		return nil, err
+	}
+	return bytes.TrimSuffix(b.Bytes(), []byte("\n")), nil
 }
 
 // UnmarshalJSON reads a finding; a key of no known method is an error.
@@ -418,7 +430,7 @@ func DecodeEvidence(data []byte) (*Evidence, error) {
 		Schema string `json:"schema"`
 	}
 	if err := json.Unmarshal(data, &head); err != nil {
-		return nil, fmt.Errorf("read evidence: %w", err)
+		return nil, fmt.Errorf("this is not an evidence document (%w)", err)
 	}
 	if head.Schema != Schema {
 		return nil, fmt.Errorf("read evidence: schema is %q, this program reads %q", head.Schema, Schema)

@@ -19,9 +19,9 @@ func (k *comparing) findings(ctx context.Context) ([]Finding, error) {
 		if rest != nil {
 			f.ItemRest = rest[i]
 		} else {
-			f.ItemRest = b.of(k.first, k.arrangement, i, k.groups[0], k.groups[1]).itemRest()
+			f.ItemRest = b.of(k.first, i).itemRest()
 		}
-		t := b.of(k.reported, k.arrangement, i, k.groups[0], k.groups[1])
+		t := b.of(k.reported, i)
 		coverages[i] = t.cover()
 		k.finding(f, i, t, &coverages[i])
 	})

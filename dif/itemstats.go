@@ -84,6 +84,9 @@ func standardizedDifference(reference, focal scoreMoments) float64 {
 		return math.NaN()
 	}
 	pooled := math.Sqrt((reference.ss + focal.ss) / float64(reference.n+focal.n-2))
+	if math.IsInf(pooled, 1) {
+		return math.NaN()
+	}
 	return (focal.mean - reference.mean) / pooled
 }
 

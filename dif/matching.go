@@ -13,16 +13,16 @@ func (r *runner) prepare(ctx context.Context) error {
 	switch r.variable {
 	case MatchExternal:
 		if r.data.External == nil {
-			return fmt.Errorf("%w: matching.variable is external, and the responses have no external_score column", ErrInput)
+			return fmt.Errorf("%w: matching.variable is external, and the responses have no external_score column; add it or match on the total", ErrInput)
 		}
 		by = oneSet
 	case MatchTotal:
 		by = oneSet
 	case MatchTotalWithinForm:
 		if r.data.FormOf == nil && len(r.data.Forms) != 1 {
-			return fmt.Errorf("%w: matching.variable is total_within_form, and the responses have no form column", ErrInput)
+			return fmt.Errorf("%w: matching.variable is total_within_form, and the responses have no form column; add it or match on the total", ErrInput)
 		}
-		by = bySetInForm
+		by = byForm
 	}
 	var err error
 	if r.packed, err = pack(ctx, r.data, by, r.workers); err != nil {

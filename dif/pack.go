@@ -2,7 +2,6 @@ package dif
 
 import (
 	"context"
-	"encoding/binary"
 	"sync"
 )
 
@@ -11,15 +10,15 @@ import (
 // The total score on any subset of items is then the number of bits of row AND mask.
 // Items without a score on any form have no planes.
 type packed struct {
-	words   int
-	first   []int    // per item, its first plane; first[len(items)] is the number of planes
-	rows    []uint64 // candidates x words
-	gaps    []bool   // per candidate: some item with planes has no scored response
-	set     []int32  // per candidate, the presented set
-	sets    []presented
-	partial int // candidates who were not presented every item
-	scores  [][]scoreTable
-	data    *Data
+	words  int
+	first  []int    // per item, its first plane; first[len(items)] is the number of planes
+	rows   []uint64 // candidates x words
+	gaps   []bool   // per candidate: some item with planes has no scored response
+	set    []int32  // per candidate, the presented set
+	sets   []presented
+	pooled int // candidates presented less than others of their set, where sets are not kept apart
+	scores [][]scoreTable
+	data   *Data
 }
 
 // presented is one set of items that candidates were presented.
@@ -54,9 +53,9 @@ func (p *packed) mask(in func(item int) bool) []uint64 {
 type setting int
 
 const (
-	oneSet      setting = iota // everybody together
-	bySet                      // by the set of items presented
-	bySetInForm                // by form and set
+	oneSet setting = iota // everybody together
+	bySet                 // by the set of items presented
+	byForm                // by form
 )
 
 // pack scores and packs the answers of d. Which set each candidate was presented is
@@ -66,7 +65,7 @@ func pack(ctx context.Context, d *Data, by setting, workers int) (*packed, error
 	for i := range d.Items {
 		p.first[i+1] = p.first[i]
 		if d.keyed(i) {
-			p.first[i+1] += d.Items[i].MaxScore
+			p.first[i+1] += max(1, d.Items[i].MaxScore)
 		}
 	}
 	p.words = max(1, (p.planes()+63)/64)
@@ -106,7 +105,7 @@ func (p *packed) packRow(c int) (gap, partial bool) {
 		switch {
 		case s == noScore:
 			gap = gap || width > 0
-			partial = partial || !shown(code, width > 0)
+			partial = partial || !shown(&tables[i], code, width > 0)
 		case width == 1:
 			row[first/64] |= uint64(s&1) << (first % 64)
 		default:
@@ -119,69 +118,98 @@ func (p *packed) packRow(c int) (gap, partial bool) {
 }
 
 // shown reports whether an answer code without a score still means that the item was
-// presented. A choice on a scored item that this candidate's form has no key for
-// cannot count, so the item is treated as not presented there.
-func shown(code byte, scored bool) bool {
-	switch {
-	case code == CodeNotPresented || code == CodeTechnical:
+// presented. Where the candidate's form has no key for an item that other forms score,
+// the item counts as not presented, whatever the candidate did.
+func shown(t *scoreTable, code byte, scored bool) bool {
+	if scored && t[CodeOmitted] == noScore {
 		return false
-	case code <= MaxCode:
-		return !scored
 	}
-	return true
+	return code != CodeNotPresented && code != CodeTechnical
 }
 
 // assignSets numbers the presented sets in order of first appearance.
 func (p *packed) assignSets(partial []bool, by setting) {
 	d := p.data
 	p.set = make([]int32, d.Candidates())
-	for _, part := range partial {
-		if part {
-			p.partial++
-		}
-	}
-	if by == oneSet {
-		all := presented{form: -1, items: make([]bool, len(d.Items)), n: d.Candidates()}
-		for i := range all.items {
-			all.items[i] = true
-		}
-		p.sets = []presented{all}
+	if by != bySet {
+		p.assignForms(partial, by == byForm && d.FormOf != nil)
 		return
 	}
 	index := map[string]int32{}
-	whole := map[int]int32{} // sets of candidates who were presented everything, by form
-	key := make([]byte, 4+(len(d.Items)+7)/8)
+	whole := int32(-1) // the set of candidates who were presented everything
+	key := make([]byte, (len(d.Items)+7)/8)
 	for c := range p.set {
-		form := -1
-		if by == bySetInForm && d.FormOf != nil {
-			form = int(d.FormOf[c])
-		}
-		if s, ok := whole[form]; ok && !partial[c] {
-			p.set[c] = s
-			p.sets[s].n++
+		if whole >= 0 && !partial[c] {
+			p.set[c] = whole
+			p.sets[whole].n++
 			continue
 		}
 		clear(key)
-		binary.LittleEndian.PutUint32(key, uint32(form+1))
 		tables := p.scores[p.form(c)]
 		items := make([]bool, len(d.Items))
 		for i, code := range d.Answers.Row(c) {
-			if tables[i][code] != noScore || shown(code, p.first[i+1] > p.first[i]) {
+			if tables[i][code] != noScore || shown(&tables[i], code, p.first[i+1] > p.first[i]) {
 				items[i] = true
-				key[4+i/8] |= 1 << (i % 8)
+				key[i/8] |= 1 << (i % 8)
 			}
 		}
 		s, ok := index[string(key)]
 		if !ok {
 			s = int32(len(p.sets))
 			index[string(key)] = s
-			p.sets = append(p.sets, presented{form: form, items: items})
+			p.sets = append(p.sets, presented{form: -1, items: items})
 		}
 		if !partial[c] {
-			whole[form] = s
+			whole = s
 		}
 		p.set[c] = s
 		p.sets[s].n++
+	}
+}
+
+// assignForms makes one set per form, or one of everybody. A set holds what any of its
+// candidates was presented; pooled counts those who were presented less.
+func (p *packed) assignForms(partial []bool, apart bool) {
+	d := p.data
+	p.sets = []presented{{form: -1, items: make([]bool, len(d.Items))}}
+	if apart {
+		p.sets = nil
+		for f := range d.Forms {
+			p.sets = append(p.sets, presented{form: f, items: make([]bool, len(d.Items))})
+		}
+	}
+	each := func(c int, of func(item int, shown bool)) {
+		tables := p.scores[p.form(c)]
+		for i, code := range d.Answers.Row(c) {
+			of(i, tables[i][code] != noScore || shown(&tables[i], code, p.first[i+1] > p.first[i]))
+		}
+	}
+	whole := make([]bool, len(p.sets)) // somebody was presented everything
+	for c := range p.set {
+		if apart {
+			p.set[c] = int32(d.FormOf[c])
+		}
+		set := &p.sets[p.set[c]]
+		set.n++
+		switch {
+		case whole[p.set[c]]:
+		case !partial[c]:
+			whole[p.set[c]] = true
+			for i := range set.items {
+				set.items[i] = true
+			}
+		default:
+			each(c, func(i int, shown bool) { set.items[i] = set.items[i] || shown })
+		}
+	}
+	for c := range p.set {
+		if partial[c] {
+			less := false
+			each(c, func(i int, shown bool) { less = less || p.sets[p.set[c]].items[i] && !shown })
+			if less {
+				p.pooled++
+			}
+		}
 	}
 }
 

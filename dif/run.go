@@ -208,13 +208,18 @@ func (r *runner) auditGrouping(ctx context.Context, name string) error {
 		return fmt.Errorf("%w: grouping %s has more groups than can be compared in one audit (%d)", ErrInput, name, math.MaxInt16)
 	}
 	of := make([]int16, r.data.Candidates())
+	noScore := make([]int, len(group))
 	for c, code := range codes.codes {
 		of[c] = -1
-		if code < 0 || !r.analysed(c) {
+		if code < 0 {
 			continue
 		}
-		if g, ok := group[codes.labels[code]]; ok {
+		if g, ok := group[codes.labels[code]]; !ok {
+			continue
+		} else if r.analysed(c) {
 			of[c] = int16(g)
+		} else {
+			noScore[g]++
 		}
 	}
 	a := r.packed.arrange(of, len(group))
@@ -234,9 +239,14 @@ func (r *runner) auditGrouping(ctx context.Context, name string) error {
 		if c.grouping != name {
 			continue
 		}
-		k := &comparing{runner: r, tabulator: t, first: first, groups: [2]int{group[c.reference], group[c.focal]}}
+		k := &comparing{runner: r, tabulator: t, groups: [2]int{group[c.reference], group[c.focal]}}
+		k.first = first.pair(a, k.groups)
+		k.noScore = [2]int{noScore[k.groups[0]], noScore[k.groups[1]]}
 		if err := k.compare(ctx, c); err != nil {
 			return fmt.Errorf("compare %s %s/%s: %w", c.grouping, c.reference, c.focal, err)
+		}
+		if k.reported != k.first && len(a.sets) > 100 {
+			t.forget(k.reported.tabulation) // large, and hardly ever the score of another comparison too
 		}
 		k.out.Groups.NotStated = notStated
 		k.warn(notStated)

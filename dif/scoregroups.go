@@ -2,6 +2,7 @@ package dif
 
 import (
 	"math"
+	"math/bits"
 	"slices"
 )
 
@@ -59,39 +60,39 @@ func (tab *tabulation) unmatched(reference, focal int) (lost [2]int) {
 	return lost
 }
 
-// reliability returns coefficient alpha of the matching score over both groups. It is
-// taken over candidates who were presented every matching item; where nobody was, it is
-// the mean over presented sets, weighted by candidates.
+// reliability returns coefficient alpha of the matching score over both groups: over all
+// candidates where they were presented the same items, else the mean over presented sets or
+// forms, weighted by candidates. Sets with less than a tenth of the candidates of the
+// largest one are left out, so that a handful of people does not speak for the score.
 func (t *tabulator) reliability(tab *tabulation, matching []int, groups [2]int) float64 {
 	if t.external != nil {
 		return math.NaN()
 	}
 	a := t.arrangement
-	everywhere := map[int]bool{} // matching items that some set holds
-	for _, s := range a.sets {
-		for _, i := range matching {
-			if a.packed.sets[s].items[i] {
-				everywhere[i] = true
+	sizes := make([]int, len(tab.places))
+	for place := 1; place < len(tab.places); place++ {
+		for _, ri := range tab.places[place].runs {
+			if r := a.runs[ri]; r.group == groups[0] || r.group == groups[1] {
+				sizes[place] += r.to - r.from
 			}
 		}
 	}
+	largest := slices.Max(sizes)
 	var weighted, n float64
 	for place := 1; place < len(tab.places); place++ {
+		if 10*sizes[place] < largest {
+			continue
+		}
 		var items []int
 		for _, i := range matching {
 			if a.packed.sets[a.sets[place-1]].items[i] {
 				items = append(items, i)
 			}
 		}
-		v, m := tab.places[place].alpha(a.packed, items, groups)
-		if math.IsNaN(v) {
-			continue
+		if v := tab.places[place].alpha(a.packed, items, groups); !math.IsNaN(v) {
+			weighted += v * float64(sizes[place])
+			n += float64(sizes[place])
 		}
-		if len(items) == len(everywhere) {
-			return v
-		}
-		weighted += v * float64(m)
-		n += float64(m)
 	}
 	if n == 0 {
 		return math.NaN()
@@ -99,9 +100,8 @@ func (t *tabulator) reliability(tab *tabulation, matching []int, groups [2]int) 
 	return weighted / n
 }
 
-// alpha returns coefficient alpha over the given items and groups of one place, and the
-// number of candidates.
-func (p *placeTables) alpha(packed *packed, items []int, groups [2]int) (float64, int) {
+// alpha returns coefficient alpha over the given items and groups of one place.
+func (p *placeTables) alpha(packed *packed, items []int, groups [2]int) float64 {
 	var n int
 	var scores []float64
 	var counts []uint32
@@ -116,7 +116,7 @@ func (p *placeTables) alpha(packed *packed, items []int, groups [2]int) (float64
 		scores, counts = append(scores, p.score(l)), append(counts, m)
 	}
 	if n < 2 {
-		return math.NaN(), n
+		return math.NaN()
 	}
 	itemSS := make([]float64, len(items))
 	for j, item := range items {
@@ -136,7 +136,41 @@ func (p *placeTables) alpha(packed *packed, items []int, groups [2]int) (float64
 		}
 		itemSS[j] = xx - x*x/float64(n)
 	}
-	return coefficientAlpha(itemSS, weightedMoments(scores, counts).ss), n
+	return coefficientAlpha(itemSS, weightedMoments(scores, counts).ss)
+}
+
+// scoreCorrelation returns the correlation of the external score with the total on the
+// masked planes over both groups; NaN where candidates are matched otherwise.
+func (t *tabulator) scoreCorrelation(mask []uint64, groups [2]int) float64 {
+	if t.external == nil {
+		return math.NaN()
+	}
+	a, w := t.arrangement, t.arrangement.packed.words
+	var m moments
+	var mean, n float64
+	for pass := range 2 { // deviations from the mean keep the sums accurate
+		for _, r := range a.runs {
+			if r.group != groups[0] && r.group != groups[1] {
+				continue
+			}
+			for i := r.from; i < r.to; i++ {
+				if pass == 0 {
+					mean += t.external[i]
+					n++
+					continue
+				}
+				total := 0
+				for k, word := range mask {
+					total += bits.OnesCount64(a.rows[i*w+k] & word)
+				}
+				m.add(1, float64(total), t.external[i]-mean)
+			}
+		}
+		if pass == 0 {
+			mean /= n
+		}
+	}
+	return m.correlation()
 }
 
 // externalItemRest returns the correlation of every item with the external score, per

@@ -7,7 +7,8 @@ const idStandardization = "standardization"
 // StandardizationResult is the standardized p-difference: how much more often focal
 // candidates answered right than reference candidates matched to them, weighted by
 // the focal distribution; negative when the item is harder for the focal group. Both
-// values are nil when no stratum is informative.
+// values are nil when no stratum holds both groups. When no stratum is informative both
+// are 0: the groups did not differ anywhere, and given the margins they could not have.
 type StandardizationResult struct {
 	PDif   *float64 `json:"p_dif"`
 	PDifSE *float64 `json:"p_dif_se"`
@@ -47,7 +48,7 @@ func (standardization) Test(t *ItemTable, _ Criteria) Result {
 		f := 1 + nF/nR // n_F (1/n_F + 1/n_R)
 		variance += f * f * x.variance()
 	}
-	if !(variance > 0) {
+	if weights == 0 {
 		return &StandardizationResult{}
 	}
 	return &StandardizationResult{number(sum / weights), number(math.Sqrt(variance) / weights)}

@@ -94,6 +94,19 @@ func (t *tabulator) tabulate(ctx context.Context, mask []uint64, groups []int) (
 	return tab, nil
 }
 
+// addLevel adds the counts of one level of another table to a level of this one.
+func (t *levelCounts) addLevel(level int, from *levelCounts, at int) {
+	t.n[level] += from.n[at]
+	addCounts(t.rightOf(level), from.rightOf(at))
+	if from.missing != nil {
+		t.needMissing()
+		addCounts(t.missingOf(level), from.missingOf(at))
+	}
+}
+
+// forget drops the tables of one matching score.
+func (t *tabulator) forget(tab *tabulation) { delete(t.known, fmt.Sprint(tab.mask)) }
+
 // levels decides the score levels of every place. A place with few candidates gets
 // only the scores that occur, so that thousands of presented sets cost no more
 // memory than their candidates.
@@ -182,46 +195,101 @@ func (t *tabulator) externalLevels(p *placeTables) {
 	}
 }
 
-// itemTabler turns the tables of a tabulation into the table of one item in one
-// comparison. It keeps its memory between calls: a table is valid until the next.
+// pairing is a tabulation seen by one comparison. Places that hold only one of its two
+// groups are brought together, so that an item costs no more than the places where
+// somebody can be matched.
+type pairing struct {
+	*tabulation
+	arrangement *arrangement
+	groups      [2]int
+	matched     []int           // places that hold both groups, ascending
+	lone        [2]*levelCounts // everybody else, by score; nil: nobody
+	external    []int           // the other places, where scores are not whole numbers
+}
+
+// pair prepares a tabulation for one comparison; both groups must have been counted.
+func (tab *tabulation) pair(a *arrangement, groups [2]int) *pairing {
+	p := &pairing{tabulation: tab, arrangement: a, groups: groups}
+	levels := 1
+	for _, m := range tab.mask {
+		levels += bits.OnesCount64(m)
+	}
+	for place := range tab.places {
+		t := &tab.places[place]
+		counts := [2]*levelCounts{t.counts[groups[0]], t.counts[groups[1]]}
+		switch {
+		case counts[0] == nil && counts[1] == nil:
+		case place != alone && counts[0] != nil && counts[1] != nil:
+			p.matched = append(p.matched, place)
+		case !tab.shifts:
+			p.external = append(p.external, place)
+		default:
+			for g, c := range counts {
+				if c == nil {
+					continue
+				}
+				if p.lone[g] == nil {
+					p.lone[g] = newLevelCounts(levels, a.packed.planes())
+				}
+				for l := range t.levels {
+					p.lone[g].addLevel(int(t.score(l)), c, l)
+				}
+			}
+		}
+	}
+	return p
+}
+
+// itemTabler turns a pairing into the table of one item. It keeps its memory between
+// calls: a table is valid until the next.
 type itemTabler struct {
 	table   ItemTable
 	scratch []uint32
 }
 
-// of returns the table of an item for the groups reference and focal. The matching
-// score contains the item: where the mask leaves it out, its own score is added, so
-// that a candidate at level s with item score k belongs to level s + k.
-func (b *itemTabler) of(tab *tabulation, a *arrangement, item, reference, focal int) *ItemTable {
-	first, width := a.packed.itemPlanes(item)
+// of returns the table of an item. The matching score contains the item: where the mask
+// leaves it out, its own score is added, so that a candidate at level s with item score k
+// belongs to level s + k.
+func (b *itemTabler) of(p *pairing, item int) *ItemTable {
+	first, width := p.arrangement.packed.itemPlanes(item)
 	t := &b.table
 	t.Categories = width + 1
 	t.Strata, t.Counts = t.Strata[:0], t.Counts[:0]
 	if width == 0 {
 		return t
 	}
-	outside := tab.mask[first/64]>>(first%64)&1 == 0
-	for place := range tab.places {
-		p := &tab.places[place]
-		set := 0
-		if place > alone && len(a.packed.sets) > 1 {
-			set = place
-		}
-		groups := [2]*levelCounts{p.counts[reference], p.counts[focal]}
-		switch {
-		case groups[0] == nil && groups[1] == nil:
-		case place == alone:
-			b.add(p, set, first, width, 0, p.levels, tab.shifts && outside, [2]*levelCounts{groups[0], nil})
-			b.add(p, set, first, width, 0, p.levels, tab.shifts && outside, [2]*levelCounts{nil, groups[1]})
-		case p.lone:
-			b.add(p, set, first, width, 0, 1, false, [2]*levelCounts{groups[0], nil})
-			b.add(p, set, first, width, 0, 1, false, [2]*levelCounts{nil, groups[1]})
-			b.add(p, set, first, width, 1, p.levels, false, groups)
-		default:
-			b.add(p, set, first, width, 0, p.levels, tab.shifts && outside, groups)
+	shift := p.shifts && p.mask[first/64]>>(first%64)&1 == 0
+	for g, c := range p.lone {
+		if c != nil {
+			var only [2]*levelCounts
+			only[g] = c
+			b.add(&placeTables{levels: c.levels}, 0, first, width, 0, c.levels, shift, only)
 		}
 	}
+	for _, place := range p.external {
+		t := &p.places[place]
+		b.addApart(t, first, width, t.levels, p.groups)
+	}
+	for _, place := range p.matched {
+		t := &p.places[place]
+		set := 0
+		if len(p.arrangement.packed.sets) > 1 {
+			set = place
+		}
+		from := 0
+		if t.lone {
+			b.addApart(t, first, width, 1, p.groups)
+			from = 1
+		}
+		b.add(t, set, first, width, from, t.levels, shift, [2]*levelCounts{t.counts[p.groups[0]], t.counts[p.groups[1]]})
+	}
 	return t
+}
+
+// addApart appends the first levels of a place for each group on its own.
+func (b *itemTabler) addApart(t *placeTables, first, width, levels int, groups [2]int) {
+	b.add(t, 0, first, width, 0, levels, false, [2]*levelCounts{t.counts[groups[0]], nil})
+	b.add(t, 0, first, width, 0, levels, false, [2]*levelCounts{nil, t.counts[groups[1]]})
 }
 
 // add appends the strata of the levels from..to of one place.

@@ -129,7 +129,7 @@ func bruteTable(d *Data, variable string, kept map[int]bool, item int, groups [2
 				}
 			}
 			set := ""
-			if variable != MatchTotal {
+			if variable == MatchTotalWithinSet {
 				for i, code := range d.Answers.Row(c) {
 					if code != CodeNotPresented && code != CodeTechnical {
 						set += fmt.Sprint(i, " ")
@@ -191,8 +191,9 @@ func TestTablesEqualBruteForce(t *testing.T) {
 					t.Fatal(err)
 				}
 				var b itemTabler
+				pair := tab.pair(a, [2]int{2, 0})
 				for item := range d.Items {
-					got := b.of(tab, a, item, 2, 0)
+					got := b.of(pair, item)
 					if d.Items[item].KeyMissing {
 						if len(got.Strata) > 0 {
 							t.Errorf("an item without a key has a table")

@@ -80,7 +80,8 @@ func BenchmarkMHTwoStage(b *testing.B) {
 				b.Fatal(err)
 			}
 			for focal := 1; focal < 6; focal++ {
-				k := &comparing{runner: r, tabulator: t, first: first, groups: [2]int{0, focal}}
+				k := &comparing{runner: r, tabulator: t, groups: [2]int{0, focal}}
+				k.first = first.pair(a, k.groups)
 				if err := k.purify(context.Background()); err != nil {
 					b.Fatal(err)
 				}

@@ -76,7 +76,7 @@ func (f *Finding) warnings(c *coverage, criteria Criteria) []Warning {
 		add(WarnFocalUnmatched, "%.0f %% of the focal candidates stand at scores without a reference candidate and are left out.", 100*lost)
 	}
 	for _, p := range []*float64{f.PReference, f.PFocal} {
-		if p != nil && *p > veryEasy {
+		if p != nil && *p > veryEasy && k.ComputedClass != nil {
 			add(WarnVeryEasy, "Over %.0f %% of a group answered correctly: read D-DIF beside the standardized difference.", 100*veryEasy)
 			break
 		}
@@ -111,17 +111,11 @@ func (k *comparing) warn(notStated int) {
 	shares := k.out.Groups.lostShares()
 	for g, name := range []string{"reference", "focal"} {
 		if shares[g] > lostWarning {
-			advice := "consider a wider matching variable"
-			if len(k.packed.sets) > 1 {
-				advice = "consider matching within form (total_within_form)"
-			}
-			add(WarnCandidatesLost, "%.1f %% of the %s group leave the analysis: their matching level holds nobody of the other group; %s.",
-				100*shares[g], name, advice)
+			add(WarnCandidatesLost, "%.1f %% of the %s group leave the analysis: %s; %s.", 100*shares[g], name, k.whyLost(), k.adviceOnLoss())
 		}
 	}
 	if shares[1] > focalLostWarning {
-		add(WarnFocalLost, "Over %.0f %% of the focal candidates have no match among the reference group; one score a level is too fine for these numbers.",
-			100*focalLostWarning)
+		add(WarnFocalLost, "Over %.0f %% of the focal candidates are not compared: the result may not hold for the whole group.", 100*focalLostWarning)
 	}
 	m := &k.out.Matching
 	if m.Reliability != nil && *m.Reliability < lowReliability {
@@ -136,8 +130,12 @@ func (k *comparing) warn(notStated int) {
 	if n := min(k.moments[0].n, k.moments[1].n); notStated > n {
 		add(WarnNotStated, "More candidates did not state %s than the smaller group holds: the result may depend on who answered.", k.out.Grouping)
 	}
-	if k.variable == MatchTotal && k.packed.partial > 0 {
-		add(WarnSetsPooled, "Not everybody was presented the same items, and the plan asks for one total: items not presented add nothing to it.")
+	if (k.variable == MatchTotal || k.variable == MatchTotalWithinForm) && k.packed.pooled > 0 {
+		where := ""
+		if k.variable == MatchTotalWithinForm {
+			where = " of their form"
+		}
+		add(WarnSetsPooled, "Some candidates were not presented every item%s, and the plan asks for one total: an item not presented adds nothing to it, as if it had been answered wrong.", where)
 	}
 	unscored := 0
 	for i := range k.data.Items {
@@ -157,39 +155,61 @@ func counted(n int, one, many string) string {
 	return fmt.Sprintf("%d %s", n, many)
 }
 
-// lostShares returns, by group, the share of labelled candidates at matching levels
-// without the other group.
+// whyLost words why labelled candidates are not compared.
+func (k *comparing) whyLost() string {
+	if k.out.Groups.Reference.NoScore+k.out.Groups.Focal.NoScore > 0 {
+		return lostUnmatched + ", or they have no external score"
+	}
+	return lostUnmatched
+}
+
+const lostUnmatched = "nobody of the other group stands at their matching level"
+
+// adviceOnLoss names what would keep more candidates.
+func (k *comparing) adviceOnLoss() string {
+	switch {
+	case k.variable == MatchExternal:
+		return "give the score to more candidates, or round it to fewer distinct values"
+	case k.variable == MatchTotalWithinSet && k.data.FormOf != nil:
+		return "consider matching within form (total_within_form)"
+	case k.variable == MatchTotalWithinSet:
+		return "if candidates sat fixed forms, name them in a form column and match within form (total_within_form)"
+	}
+	return "one score a level is fine-grained for these numbers; more candidates at the same scores would be compared with larger groups"
+}
+
+// lostShares returns, by group, the share of labelled candidates who are not compared.
 func (g *Groups) lostShares() [2]float64 {
-	return [2]float64{ratio(g.Reference.Unmatched, g.Reference.N), ratio(g.Focal.Unmatched, g.Focal.N)}
+	share := func(g *Group) float64 { return ratio(g.Unmatched+g.NoScore, g.N+g.NoScore) }
+	return [2]float64{share(&g.Reference), share(&g.Focal)}
 }
 
-// Lost is a share of candidates who left the analysis, large enough to be said before
-// any result.
+// Lost is a share of candidates of one comparison who left the analysis, large enough
+// to be said before any result.
 type Lost struct {
-	Comparison string // "grouping reference/focal", or empty for the whole audit
-	Share      float64
-	Why        string
+	Comparison       string // "grouping reference/focal"
+	Share            float64
+	Reference, Focal float64 // shares of each group
+	Why              string
 }
 
-// LostCandidates returns every share above 2 %, the whole audit first, then the
-// comparisons in order.
+// LostCandidates returns the comparisons, in order, in which over 2 % of the candidates of
+// both groups together, or of one group, left the analysis.
 func (e *Evidence) LostCandidates() []Lost {
 	var lost []Lost
-	for _, x := range e.Inputs.Exclusions {
-		share := ratio(x.Count, e.Inputs.CandidatesReceived)
-		if x.Reason == ExcludedNoExternalScore && x.Grouping == nil && share > announceLostShare {
-			lost = append(lost, Lost{Share: share, Why: "they have no external score"})
-		}
-	}
 	for i := range e.Comparisons {
 		c := &e.Comparisons[i]
-		g := &c.Groups
-		share := ratio(g.Reference.Unmatched+g.Focal.Unmatched, g.Reference.N+g.Focal.N)
-		if share > announceLostShare {
-			lost = append(lost, Lost{
-				Comparison: fmt.Sprintf("%s %s/%s", c.Grouping, c.Reference, c.Focal), Share: share,
-				Why: "nobody of the other group stands at their matching level",
-			})
+		r, f := &c.Groups.Reference, &c.Groups.Focal
+		shares := c.Groups.lostShares()
+		l := Lost{
+			Comparison: fmt.Sprintf("%s %s/%s", c.Grouping, c.Reference, c.Focal), Reference: shares[0], Focal: shares[1], Why: lostUnmatched,
+			Share: ratio(r.Unmatched+f.Unmatched+r.NoScore+f.NoScore, r.N+f.N+r.NoScore+f.NoScore),
+		}
+		if r.NoScore+f.NoScore > 0 {
+			l.Why += ", or they have no external score"
+		}
+		if max(l.Share, l.Reference, l.Focal) > announceLostShare {
+			lost = append(lost, l)
 		}
 	}
 	return lost
