@@ -112,7 +112,7 @@ func parseAudit(args []string) (*auditOptions, *flag.FlagSet, error) {
 			return fmt.Errorf("--%s is not part of this version: it belongs to the likelihood-ratio test", later)
 		})
 	}
-	if err := f.Parse(args); err != nil {
+	if err := parseFlags(f, args); err != nil {
 		return nil, f, err
 	}
 	switch {
@@ -192,6 +192,9 @@ func (o *auditOptions) reportTime(env environment) (time.Time, error) {
 			return t, fmt.Errorf("SOURCE_DATE_EPOCH %q: give seconds since 1970", epoch)
 		}
 		t = time.Unix(seconds, 0)
+		if year := t.UTC().Year(); year < 1 || year > 9999 {
+			return t, fmt.Errorf("SOURCE_DATE_EPOCH %q lies outside the years 1 to 9999", epoch)
+		}
 	}
 	return t.UTC().Truncate(24 * time.Hour), nil
 }
@@ -222,11 +225,11 @@ func runAudit(ctx context.Context, args []string, env environment) int {
 	var evidence *dif.Evidence
 	var encoded []byte
 	out := outputs{stdout: env.stdout}
-	out.add("--evidence", o.evidence, func(w io.Writer) error { _, err := w.Write(encoded); return err })
-	out.add("--report", o.report, func(w io.Writer) error {
+	out.add("--evidence", o.evidence, 0o600, func(w io.Writer) error { _, err := w.Write(encoded); return err })
+	out.add("--report", o.report, 0o666, func(w io.Writer) error {
 		return reports.WritePDF(w, evidence, reports.Options{Date: date, EvidenceSHA256: digest(encoded)})
 	})
-	out.add("--csv", o.csv, func(w io.Writer) error { return reports.WriteCSV(w, evidence) })
+	out.add("--csv", o.csv, 0o666, func(w io.Writer) error { return reports.WriteCSV(w, evidence) })
 	if err := out.check(append(o.inputs.paths(), o.plan)); err != nil {
 		return bad(err)
 	}
@@ -259,19 +262,12 @@ func runAudit(ctx context.Context, args []string, env environment) int {
 		fmt.Fprintf(env.stderr, "difaudit audit: %v\n", err)
 		return statusInternal
 	}
-	if err := out.write(); err != nil {
-		fmt.Fprintf(env.stderr, "difaudit audit: %v\n", err)
-		return statusInternal
-	}
 	table := env.stdout
 	if out.toStdout() {
 		table = env.stderr
 	}
-	for _, line := range lostLines(evidence) {
-		fmt.Fprintln(table, line)
-	}
-	if err := reports.WriteTable(table, evidence); err != nil {
-		fmt.Fprintf(env.stderr, "difaudit audit: print findings: %v\n", err)
+	if err := out.write(func() error { return printFindings(table, evidence) }); err != nil {
+		fmt.Fprintf(env.stderr, "difaudit audit: %v; no file was written.\n", err)
 		return statusInternal
 	}
 	for _, t := range out.targets {
@@ -305,16 +301,26 @@ func readFailed(ctx context.Context, command string, err error, env environment)
 	return statusBadInput, true
 }
 
+// printFindings writes the table of findings.
+func printFindings(w io.Writer, e *dif.Evidence) error {
+	for _, line := range lostLines(e) {
+		if _, err := fmt.Fprintln(w, line); err != nil {
+			return fmt.Errorf("print findings: %w", err)
+		}
+	}
+	if err := reports.WriteTable(w, e); err != nil {
+		return fmt.Errorf("print findings: %w", err)
+	}
+	return nil
+}
+
 // lostLines says which share of the candidates left the analysis, where it is worth
 // saying before any result.
 func lostLines(e *dif.Evidence) []string {
 	var lines []string
 	for _, l := range e.LostCandidates() {
-		where := "of all candidates received"
-		if l.Comparison != "" {
-			where = "of the candidates compared by " + l.Comparison
-		}
-		lines = append(lines, fmt.Sprintf("Candidates lost: %.1f %% %s: %s.", 100*l.Share, where, l.Why))
+		lines = append(lines, fmt.Sprintf("Candidates lost: %.1f %% of the candidates compared by %s (reference %.1f %%, focal %.1f %%): %s.",
+			100*l.Share, l.Comparison, 100*l.Reference, 100*l.Focal, l.Why))
 	}
 	return lines
 }

@@ -10,6 +10,8 @@ import (
 
 func main() {
 	ctx, stop := signal.NotifyContext(context.Background(), os.Interrupt, syscall.SIGTERM)
+	context.AfterFunc(ctx, stop)   // a second signal ends the program at once
+	signal.Ignore(syscall.SIGPIPE) // a closed pipe is a write error, so that nothing is left half-written
 	status := run(ctx, os.Args[1:], environment{
 		getenv: os.Getenv, stdin: os.Stdin, stdout: os.Stdout, stderr: os.Stderr, now: currentTime,
 	})

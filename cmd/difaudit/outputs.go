@@ -1,9 +1,11 @@
 package main
 
 import (
+	"bytes"
 	"errors"
 	"fmt"
 	"io"
+	"io/fs"
 	"os"
 	"path/filepath"
 )
@@ -18,13 +20,14 @@ type outputs struct {
 
 type target struct {
 	option, path string
+	mode         os.FileMode // before the umask
 	write        func(io.Writer) error
 }
 
 // add names a target; an empty path is none.
-func (o *outputs) add(option, path string, write func(io.Writer) error) {
+func (o *outputs) add(option, path string, mode os.FileMode, write func(io.Writer) error) {
 	if path != "" {
-		o.targets = append(o.targets, target{option, path, write})
+		o.targets = append(o.targets, target{option, path, mode, write})
 	}
 }
 
@@ -62,9 +65,9 @@ func (o *outputs) check(inputs []string) error {
 		if info, err := os.Stat(t.path); err == nil && !info.Mode().IsRegular() {
 			return fmt.Errorf("%s: %s is not a file that can be replaced", t.option, t.path)
 		}
-		f, err := os.CreateTemp(folder, ".difaudit-*")
+		f, err := t.create()
 		if err != nil {
-			return fmt.Errorf("%s: cannot write in %s", t.option, folder)
+			return fmt.Errorf("%s: cannot write in %s; choose another folder or change its permissions", t.option, folder)
 		}
 		f.Close()
 		os.Remove(f.Name())
@@ -72,8 +75,23 @@ func (o *outputs) check(inputs []string) error {
 	return nil
 }
 
+// create opens a new file beside the target.
+func (t target) create() (*os.File, error) {
+	for i := 0; ; i++ {
+		name := filepath.Join(filepath.Dir(t.path), fmt.Sprintf(".difaudit-%d-%d", os.Getpid(), i))
+		f, err := os.OpenFile(name, os.O_WRONLY|os.O_CREATE|os.O_EXCL, t.mode)
+		if !errors.Is(err, fs.ErrExist) {
+			return f, err
+		}
+	}
+}
+
+// same reports whether two paths name one file, also one that does not exist yet.
 func same(a, b string) bool {
-	if a == b {
+	if a == "-" || b == "-" {
+		return a == b
+	}
+	if full(a) == full(b) {
 		return true
 	}
 	x, errX := os.Stat(a)
@@ -81,42 +99,61 @@ func same(a, b string) bool {
 	return errX == nil && errY == nil && os.SameFile(x, y)
 }
 
-// write writes every target.
-func (o *outputs) write() (err error) {
-	var written []string
+func full(path string) string {
+	path, err := filepath.Abs(path)
+	if err != nil {
+		return path
+	}
+	if folder, err := filepath.EvalSymlinks(filepath.Dir(path)); err == nil {
+		return filepath.Join(folder, filepath.Base(path))
+	}
+	return path
+}
+
+// write writes every target. Files appear under their names only when everything is
+// written, standard output and what say prints included.
+func (o *outputs) write(say func() error) (err error) {
+	written := make([]string, len(o.targets))
 	defer func() {
 		if err != nil {
 			for _, name := range written {
-				os.Remove(name)
+				if name != "" {
+					os.Remove(name)
+				}
 			}
 		}
 	}()
-	for _, t := range o.targets {
+	var out bytes.Buffer
+	for i, t := range o.targets {
 		if t.path == "-" {
+			if err := t.write(&out); err != nil {
+				return fmt.Errorf("%s: %w", t.option, err)
+			}
 			continue
 		}
-		f, err := os.CreateTemp(filepath.Dir(t.path), ".difaudit-*")
+		f, err := t.create()
 		if err != nil {
 			return fmt.Errorf("%s: %w", t.option, err)
 		}
-		written = append(written, f.Name())
-		err = errors.Join(t.write(f), f.Chmod(0o644), f.Sync(), f.Close())
-		if err != nil {
+		written[i] = f.Name()
+		if err := errors.Join(t.write(f), f.Sync(), f.Close()); err != nil {
 			return fmt.Errorf("%s: %w", t.option, err)
 		}
 	}
-	i := 0
-	for _, t := range o.targets {
+	if _, err := o.stdout.Write(out.Bytes()); err != nil {
+		return fmt.Errorf("write standard output: %w", err)
+	}
+	if err := say(); err != nil {
+		return err
+	}
+	for i, t := range o.targets {
 		if t.path == "-" {
-			if err := t.write(o.stdout); err != nil {
-				return fmt.Errorf("%s: %w", t.option, err)
-			}
 			continue
 		}
 		if err := os.Rename(written[i], t.path); err != nil {
 			return fmt.Errorf("%s: %w", t.option, err)
 		}
-		i++
+		written[i] = ""
 	}
 	return nil
 }

@@ -28,13 +28,11 @@ func newProgress(w io.Writer) *progress {
 
 var stageWords = map[string]string{"score": "Scoring and packing answers", "compare": "Comparing groups"}
 
-// rows tells how many rows have been read.
+// rows tells how many rows have been read. Without a terminal nothing is printed, since
+// what was taken as items stands first.
 func (p *progress) rows(n int) {
 	if p.terminal {
 		p.draw(fmt.Sprintf("Reading responses: %d rows", n))
-	} else if p.stage != "read" {
-		p.stage = "read"
-		fmt.Fprintln(p.w, "Reading responses")
 	}
 }
 

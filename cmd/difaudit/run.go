@@ -39,8 +39,8 @@ type command struct {
 func commands() []command {
 	return []command{
 		{"audit", "audit response files: Mantel-Haenszel and companions, A/B/C, evidence, report", runAudit},
-		{"simulate", "write responses under a stated model with planted differences, and the truth", func(_ context.Context, args []string, env environment) int {
-			return runSimulate(args, env.stdout, env.stderr)
+		{"simulate", "write responses under a stated model with planted differences, and the truth", func(ctx context.Context, args []string, env environment) int {
+			return runSimulate(ctx, args, env.stdout, env.stderr)
 		}},
 		{"verify", "check evidence against itself, and with the files against a new run", runVerify},
 		{"version", "print version, commit and Go version", runVersion},
@@ -95,6 +95,7 @@ func newFlags(name string) *flag.FlagSet {
 func printOptions(w io.Writer, f *flag.FlagSet) {
 	f.VisitAll(func(o *flag.Flag) {
 		value, help := flag.UnquoteUsage(o)
+		help = strings.TrimLeft(strings.TrimPrefix(help, value), ": ,")
 		name := "--" + o.Name
 		if value != "" {
 			name += " " + value
@@ -104,6 +105,22 @@ func printOptions(w io.Writer, f *flag.FlagSet) {
 		}
 		fmt.Fprintf(w, "  %-32s %s\n", name, help)
 	})
+}
+
+// parseFlags parses the options of a command; messages name them as they are written.
+func parseFlags(f *flag.FlagSet, args []string) error {
+	err := f.Parse(args)
+	if err == nil || errors.Is(err, flag.ErrHelp) {
+		return err
+	}
+	text := err.Error()
+	if name, ok := strings.CutPrefix(text, "flag provided but not defined: -"); ok {
+		return fmt.Errorf("--%s is not an option of this command", name)
+	}
+	if name, ok := strings.CutPrefix(text, "flag needs an argument: -"); ok {
+		return fmt.Errorf("--%s needs a value", name)
+	}
+	return errors.New(strings.ReplaceAll(text, " for flag -", " for --"))
 }
 
 // commaList splits a list option; empty entries are dropped.
@@ -129,7 +146,7 @@ func (env environment) openInput(path string) (io.ReadCloser, string, error) {
 		if errors.As(err, &p) {
 			err = p.Err
 		}
-		return nil, "", fmt.Errorf("open %s: %w", path, err)
+		return nil, "", fmt.Errorf("open %s: %w; check the path and your permissions", path, err)
 	}
 	if info, err := f.Stat(); err == nil && info.IsDir() {
 		f.Close()

@@ -3,6 +3,7 @@ package main
 import (
 	"bufio"
 	"compress/gzip"
+	"context"
 	"encoding/json"
 	"errors"
 	"flag"
@@ -21,7 +22,7 @@ import (
 // runSimulate writes responses under a stated model with planted DIF, and the truth
 // beside them. The status is 0 when the files are written, 2 for bad usage with
 // nothing written, 3 when writing fails.
-func runSimulate(args []string, stdout, stderr io.Writer) int {
+func runSimulate(ctx context.Context, args []string, stdout, stderr io.Writer) int {
 	o, err := parseSimulate(args, stdout)
 	switch {
 	case errors.Is(err, flag.ErrHelp):
@@ -40,7 +41,10 @@ func runSimulate(args []string, stdout, stderr io.Writer) int {
 	if err := o.checkTargets(); err != nil {
 		return simulateFailed(stderr, err)
 	}
-	if err := o.write(s); err != nil {
+	if err := o.write(ctx, s); err != nil {
+		if ctx.Err() != nil {
+			err = errors.New("interrupted; nothing was written")
+		}
 		fmt.Fprintf(stderr, "difaudit simulate: %v\n", err)
 		return 3
 	}
@@ -108,7 +112,7 @@ func parseSimulate(args []string, stdout io.Writer) (*simulateOptions, error) {
 	f.Int64Var(&o.seed, "seed", 1, "whole `NUMBER`; the same seed and options give the same files")
 	f.BoolVar(&o.gzip, "gzip", false, "compress the files that have a row for each candidate")
 	f.BoolVar(&o.force, "force", false, "overwrite the files of an earlier run")
-	if err := f.Parse(args); err != nil {
+	if err := parseFlags(f, args); err != nil {
 		if errors.Is(err, flag.ErrHelp) {
 			simulateHelp(stdout, f)
 		}
@@ -280,7 +284,7 @@ func (o *simulateOptions) checkTargets() error {
 
 // write writes all files under temporary names and renames them at the end, so that
 // a failure leaves no half of a simulation behind.
-func (o *simulateOptions) write(s *simulate.Simulation) (err error) {
+func (o *simulateOptions) write(ctx context.Context, s *simulate.Simulation) (err error) {
 	if err := os.MkdirAll(o.out, 0o777); err != nil {
 		return fmt.Errorf("make directory: %w", err)
 	}
@@ -329,7 +333,11 @@ func (o *simulateOptions) write(s *simulate.Simulation) (err error) {
 		people.w.Write(layout.CandidatesHeader(nil))
 	}
 	var row []byte
+	n := 0
 	for c := range s.Candidates() {
+		if n++; n%1000 == 0 && ctx.Err() != nil {
+			return ctx.Err()
+		}
 		row = layout.Responses(row[:0], c)
 		if _, err := responses.w.Write(row); err != nil {
 			return fmt.Errorf("write %s: %w", responses.path, err)

@@ -20,7 +20,7 @@ import (
 func simulated(t *testing.T, want int, dir string, args ...string) (stdout, stderr string) {
 	t.Helper()
 	var out, errs bytes.Buffer
-	if got := runSimulate(append([]string{"--out", dir}, args...), &out, &errs); got != want {
+	if got := runSimulate(t.Context(), append([]string{"--out", dir}, args...), &out, &errs); got != want {
 		t.Fatalf("%v: status %d, want %d\n%s%s", args, got, want, out.String(), errs.String())
 	}
 	return out.String(), errs.String()
@@ -229,7 +229,7 @@ func TestSimulateBadUsage(t *testing.T) {
 		{[]string{"--raw", "--options", "0"}, "--options 0: give at least 2"},
 		{[]string{"--omit-share", "0.9"}, "only wrong answers are omitted"},
 		{[]string{"--not-reached-share", "0.5"}, "give a share from 0 to 0.25"},
-		{[]string{"--colour"}, "flag provided but not defined"},
+		{[]string{"--colour"}, "--colour is not an option"},
 		{[]string{"--seed", "1", "more"}, `"more" is no option`},
 		{[]string{"--out", ""}, "add --out DIR"},
 	} {

@@ -32,7 +32,7 @@ func runVerify(ctx context.Context, args []string, env environment) int {
 	var path string
 	rest := args
 	for {
-		if err := f.Parse(rest); errors.Is(err, flag.ErrHelp) {
+		if err := parseFlags(f, rest); errors.Is(err, flag.ErrHelp) {
 			fmt.Fprintln(env.stdout, "difaudit verify EVIDENCE [--responses FILE] [--items FILE] [--forms FILE] [--candidates FILE]\n\nOptions:")
 			printOptions(env.stdout, f)
 			return statusDone
