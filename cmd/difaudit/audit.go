@@ -35,10 +35,10 @@ type auditOptions struct {
 type inputFiles struct{ responses, items, forms, candidates string }
 
 func (f *inputFiles) options(set *flag.FlagSet) {
-	set.StringVar(&f.responses, "responses", "", "`FILE` with one row per candidate (or candidate and item); - is standard input")
-	set.StringVar(&f.items, "items", "", "`FILE` describing the items: keys, options, maximum scores, roles")
-	set.StringVar(&f.forms, "forms", "", "`FILE` listing the items of each form in order")
-	set.StringVar(&f.candidates, "candidates", "", "`FILE` with group labels by candidate")
+	set.StringVar(&f.responses, "responses", "", "`FILE`: the answers, one row per candidate, or per candidate and item; - is standard input (required)")
+	set.StringVar(&f.items, "items", "", "`FILE`: the items with keys, options, maximum scores, roles")
+	set.StringVar(&f.forms, "forms", "", "`FILE`: the items of each form in order")
+	set.StringVar(&f.candidates, "candidates", "", "`FILE`: group labels by candidate")
 }
 
 func (f *inputFiles) paths() []string { return []string{f.responses, f.items, f.forms, f.candidates} }
@@ -54,13 +54,13 @@ func parseAudit(args []string) (*auditOptions, *flag.FlagSet, error) {
 	o := &auditOptions{}
 	f := newFlags("audit")
 	o.inputs.options(f)
-	f.StringVar(&o.plan, "plan", "", "`FILE` with the audit plan, YAML or JSON")
-	f.StringVar(&o.evidence, "evidence", "", "write the evidence to this `FILE` (JSON); - is standard output")
-	f.StringVar(&o.report, "report", "", "write the report to this `FILE` (PDF)")
-	f.StringVar(&o.csv, "csv", "", "write the findings to this `FILE` (CSV)")
-	f.StringVar(&o.reportDate, "report-date", "", "`YYYY-MM-DD` printed on the report; default SOURCE_DATE_EPOCH, else today (UTC)")
-	f.StringVar(&o.administration, "administration", "", "`ID` of the administration the responses come from")
-	f.IntVar(&o.workers, "workers", runtime.NumCPU(), "number of goroutines `N`; the outcome does not depend on it")
+	f.StringVar(&o.plan, "plan", "", "`FILE`: the audit plan, YAML or JSON")
+	f.StringVar(&o.evidence, "evidence", "", "`FILE`: write the evidence here, JSON; - is standard output")
+	f.StringVar(&o.report, "report", "", "`FILE`: write the report here, PDF")
+	f.StringVar(&o.csv, "csv", "", "`FILE`: write the findings here, CSV")
+	f.StringVar(&o.reportDate, "report-date", "", "`YYYY-MM-DD`: the date printed on the report; default SOURCE_DATE_EPOCH, else today (UTC)")
+	f.StringVar(&o.administration, "administration", "", "`ID`: your name of the sitting, kept in the evidence")
+	f.IntVar(&o.workers, "workers", runtime.NumCPU(), "`N`: number of goroutines; the outcome does not depend on it")
 
 	over := func(name, usage string, apply func(p *dif.Plan, v string) error) {
 		f.Func(name, usage, func(v string) error {
@@ -69,7 +69,7 @@ func parseAudit(args []string) (*auditOptions, *flag.FlagSet, error) {
 		})
 	}
 	first := true
-	over("comparison", "`GROUPING:REFERENCE:FOCAL`, repeatable; FOCAL may be each", func(p *dif.Plan, v string) error {
+	over("comparison", "`G:REF:FOCAL`: grouping, reference label and focal label, or each; repeatable", func(p *dif.Plan, v string) error {
 		parts := strings.Split(v, ":")
 		if len(parts) != 3 {
 			return fmt.Errorf("--comparison %q: write GROUPING:REFERENCE:FOCAL", v)
@@ -96,19 +96,19 @@ func parseAudit(args []string) (*auditOptions, *flag.FlagSet, error) {
 			return nil
 		})
 	}
-	list("groupings", "`LIST` of columns that are groupings", func(p *dif.Plan) *[]string { return &p.Columns.Groupings })
-	list("ignore", "`LIST` of columns to ignore", func(p *dif.Plan) *[]string { return &p.Columns.Ignore })
-	list("methods", "`LIST` of method ids, or all", func(p *dif.Plan) *[]string { return &p.Methods })
-	text("matching", "matching variable `V`: auto, total, total_within_form, external", func(p *dif.Plan) *string { return &p.Matching.Variable })
-	text("levels", "score levels `V`: thin", func(p *dif.Plan) *string { return &p.Matching.Levels })
-	text("purification", "`V`: none, two_stage", func(p *dif.Plan) *string { return &p.Matching.Purification })
-	text("empty", "what an empty cell means, `V`: not_presented, omitted, by_position", func(p *dif.Plan) *string { return &p.Missing.Empty })
-	list("omitted", "`CODES` of omitted answers", func(p *dif.Plan) *[]string { return &p.Missing.Omitted })
-	list("not-reached", "`CODES` of items not reached", func(p *dif.Plan) *[]string { return &p.Missing.NotReached })
-	count("min-smaller-group", "least `N` candidates in the smaller group for a letter", func(p *dif.Plan) *int { return &p.Criteria.MinSmallerGroup })
-	count("min-total", "least `N` candidates in both groups for a letter", func(p *dif.Plan) *int { return &p.Criteria.MinTotal })
+	list("groupings", "`LIST`: columns that are groupings", func(p *dif.Plan) *[]string { return &p.Columns.Groupings })
+	list("ignore", "`LIST`: columns to ignore", func(p *dif.Plan) *[]string { return &p.Columns.Ignore })
+	list("methods", "`LIST`: method ids, or all", func(p *dif.Plan) *[]string { return &p.Methods })
+	text("matching", "`V`: matching variable: auto, total, total_within_form, external", func(p *dif.Plan) *string { return &p.Matching.Variable })
+	text("levels", "`V`: score levels: thin", func(p *dif.Plan) *string { return &p.Matching.Levels })
+	text("purification", "`V`: refinement of the matching score: none, two_stage", func(p *dif.Plan) *string { return &p.Matching.Purification })
+	text("empty", "`V`: what an empty cell means: not_presented, omitted, by_position", func(p *dif.Plan) *string { return &p.Missing.Empty })
+	list("omitted", "`CODES`: codes of omitted answers", func(p *dif.Plan) *[]string { return &p.Missing.Omitted })
+	list("not-reached", "`CODES`: codes of items not reached", func(p *dif.Plan) *[]string { return &p.Missing.NotReached })
+	count("min-smaller-group", "`N`: least number of candidates in the smaller group for a letter", func(p *dif.Plan) *int { return &p.Criteria.MinSmallerGroup })
+	count("min-total", "`N`: least number of candidates in both groups for a letter", func(p *dif.Plan) *int { return &p.Criteria.MinTotal })
 	for _, later := range []string{"model", "anchors"} {
-		over(later, "not part of this version: belongs to the likelihood-ratio test", func(*dif.Plan, string) error {
+		over(later, "`V`: not part of this version; belongs to the likelihood-ratio test", func(*dif.Plan, string) error {
 			return fmt.Errorf("--%s is not part of this version: it belongs to the likelihood-ratio test", later)
 		})
 	}

@@ -23,7 +23,7 @@ func runVerify(ctx context.Context, args []string, env environment) int {
 	var inputs inputFiles
 	f := newFlags("verify")
 	inputs.options(f)
-	workers := f.Int("workers", runtime.NumCPU(), "number of goroutines `N`")
+	workers := f.Int("workers", runtime.NumCPU(), "`N`: number of goroutines")
 	bad := func(err error) int {
 		fmt.Fprintf(env.stderr, "difaudit verify: %v\n", err)
 		return statusBadInput
