@@ -20,8 +20,8 @@ type candidates struct {
 }
 
 // readCandidates reads the candidates file: the labels of every grouping the plan uses.
-func readCandidates(ctx context.Context, f *File, groupings []*grouping, problems *Problems) (*candidates, error) {
-	t, err := openTable(f, problems)
+func readCandidates(ctx context.Context, f *File, rule *headerRule, groupings []*grouping, problems *Problems) (*candidates, error) {
+	t, err := openTable(f, rule, problems)
 	if t == nil {
 		return nil, err
 	}
@@ -104,6 +104,8 @@ func checkID(id []byte, t *table, problems *Problems) bool {
 		problems.add(emptyCandidateID, t.name, t.row, candidateColumn, "the row has no candidate identifier; give one or remove the row")
 	case !utf8.Valid(id):
 		problems.add(badEncoding, t.name, t.row, candidateColumn, "the identifier is not UTF-8; save the file as UTF-8")
+	case len(id) > maxNameBytes:
+		problems.add(badValue, t.name, t.row, candidateColumn, "the identifier is longer than %s; shorten it, or check the quotation marks of this row", nameLimit)
 	default:
 		return true
 	}

@@ -104,6 +104,9 @@ func (r *reading) missingGroupings() {
 	}
 	var have []string
 	for _, name := range r.responses.header {
+		if !r.responses.complete {
+			break // the header may hold data
+		}
 		if u := r.columnUse(name); u == useNothing || u == useGrouping || u == useUndeclared || u == usePresumed {
 			have = append(have, name)
 		}
@@ -124,17 +127,21 @@ func (r *reading) missingGroupings() {
 	for _, name := range have[:min(len(have), 40)] {
 		names = append(names, shown(name))
 	}
-	columns := "there is no column that could be one"
-	if len(names) > 0 {
-		columns = "the columns are " + strings.Join(names, ", ")
+	columns := " (there is no column that could be one)"
+	switch {
+	case !r.responses.complete:
+		columns = ""
+	case len(names) > 0:
+		columns = " (the columns are " + strings.Join(names, ", ")
 		if len(have) > len(names) {
 			columns += ", ..."
 		}
+		columns += ")"
 	}
 	for _, g := range r.groupings {
 		if !g.found {
 			r.problems.add(missingGrouping, file, 0, g.name,
-				"a comparison uses the grouping %s and no file has such a column; correct the comparison, or add the column to the candidates file (%s)", shown(g.name), columns)
+				"a comparison uses the grouping %s and no file has such a column; correct the comparison, or add the column to the candidates file%s", shown(g.name), columns)
 		}
 	}
 }

@@ -87,8 +87,8 @@ func (s *comparisonSides) of(labels [][]uint16, i int32) side {
 
 // checkLabels reports labels of comparisons that no candidate kept has.
 func (r *reading) checkLabels(kept []int32) {
-	if r.responses.cut || r.candidates != nil && r.candidates.table.cut {
-		return // the label may stand further down
+	if r.responses.gaps() || r.candidates != nil && r.candidates.table.gaps() {
+		return // the label may stand in a row that was not read
 	}
 	sides := r.comparisonSides()
 	for c, p := range r.plan.Comparisons {

@@ -16,14 +16,13 @@ const (
 	scored                // a score 0..limit
 	choices               // one of the declared options
 	open                  // any choice
-	undecided             // scores if all cells are integers, else choices without a key
+	undecided             // what the cells are shows when all were seen
 )
 
 const (
-	presumedMax    = 10
-	maxChoices     = dif.MaxCode + 1
-	maxChoiceBytes = 256
-	escape         = 0xFF // in table: the cell needs a closer look
+	presumedMax = 10
+	maxChoices  = dif.MaxCode + 1
+	escape      = 0xFF // in table: the cell needs a closer look
 )
 
 // encoder turns the cells of one item into answer codes.
@@ -36,6 +35,7 @@ type encoder struct {
 	labels  []string        // choices by code
 	codes   map[string]byte // the other way round
 	full    bool            // a choice had no room
+	weighed weighing        // of an undecided item
 }
 
 func newEncoder(m mode, limit int, labels []string, missing map[string]byte) *encoder {
@@ -71,7 +71,7 @@ func (e *encoder) learn(label string) (byte, bool) {
 	c := byte(len(e.labels))
 	e.labels = append(e.labels, label)
 	e.codes[label] = c
-	if len(label) == 1 {
+	if len(label) == 1 && e.mode != undecided {
 		e.table[label[0]] = c
 	}
 	return c, true
@@ -84,12 +84,13 @@ const (
 	accepted refusal = iota
 	notUTF8
 	outOfRange
+	tooLong
 	noRoom
 )
 
-// code returns the answer code of a cell. The code of a refused cell is not stored
-// anywhere that counts.
-func (e *encoder) code(cell string) (byte, refusal) {
+// code returns the answer code of a cell in a row of its file. The code of a refused
+// cell is not stored anywhere that counts.
+func (e *encoder) code(cell string, row int) (byte, refusal) {
 	if len(cell) == 1 {
 		if c := e.table[cell[0]]; c != escape {
 			if c <= dif.MaxCode && int(c) > e.max {
@@ -105,6 +106,9 @@ func (e *encoder) code(cell string) (byte, refusal) {
 	if c, is := e.missing[cell]; is {
 		return c, accepted
 	}
+	if e.mode == undecided {
+		return e.weigh(cell, row)
+	}
 	if c, is := e.codes[cell]; is {
 		return c, accepted
 	}
@@ -114,12 +118,12 @@ func (e *encoder) code(cell string) (byte, refusal) {
 			e.max = max(e.max, s)
 			return byte(s), accepted
 		}
-	case open, undecided:
+	case open:
 		switch {
 		case !utf8.ValidString(cell):
 			return dif.CodeInvalid, notUTF8
-		case len(cell) > maxChoiceBytes:
-			return dif.CodeInvalid, outOfRange
+		case len(cell) > maxNameBytes:
+			return dif.CodeInvalid, tooLong
 		}
 		if c, ok := e.learn(cell); ok {
 			return c, accepted
@@ -151,20 +155,6 @@ func plainInteger(s string) (int, bool) {
 		n = 10*n + int(s[i]-'0')
 	}
 	return n, n <= dif.MaxCode
-}
-
-// numeric reports whether all choices seen are whole numbers that can be scores, and
-// the largest of them, -1 with none.
-func (e *encoder) numeric() (largest int, ok bool) {
-	largest = -1
-	for _, label := range e.labels {
-		n, plain := plainInteger(label)
-		if !plain {
-			return 0, false
-		}
-		largest = max(largest, n)
-	}
-	return largest, true
 }
 
 // recoding is a new code for each code of an item's choices; codes of missing

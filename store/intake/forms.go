@@ -18,6 +18,7 @@ type form struct {
 	id      string
 	entries []*formEntry // nil: only the label is known
 	byItem  map[string]*formEntry
+	byPlace map[int]*formEntry // by position
 }
 
 // formEntry is one row of the forms file.
@@ -60,7 +61,7 @@ var formColumns = []string{"form", "position", "item_id", "version", "key", "opt
 // readForms reads the forms file. Without an items file the items it names become known.
 func readForms(ctx context.Context, f *File, s *formSet, c *catalogue, problems *Problems) (*table, error) {
 	s.declared, s.name = true, f.Name
-	t, err := openTable(f, problems)
+	t, err := openTable(f, newHeaderRule(3, formColumns, strings.Join(formColumns, ", ")+" (the first three are required)"), problems)
 	if t == nil {
 		s.broken = true
 		return nil, err
@@ -83,15 +84,14 @@ func readForms(ctx context.Context, f *File, s *formSet, c *catalogue, problems 
 		}
 		s.readEntry(t, record, c, problems)
 	}
-	s.broken = s.broken || t.cut || t.ragged > 0 || len(s.forms) == 0
+	s.broken = s.broken || t.gaps() || len(s.forms) == 0
 	if t.rows == 0 {
 		problems.add(noRows, t.name, 0, "", "the forms file describes no form; add one row per form and item")
 	}
 	for _, f := range s.forms {
 		slices.SortFunc(f.entries, func(a, b *formEntry) int { return cmp.Compare(a.position, b.position) })
 	}
-	s.checkKeys(c, problems)
-	return t, nil
+	return t, s.checkKeys(ctx, c, problems)
 }
 
 // readEntry takes over one row of the forms file.
@@ -103,6 +103,10 @@ func (s *formSet) readEntry(t *table, record []string, c *catalogue, problems *P
 	for _, name := range formColumns {
 		if value := t.cell(record, name); value != strings.ToValidUTF8(value, "") {
 			bad(badEncoding, name, "the cell is not UTF-8; save the file as UTF-8")
+			return
+		}
+		if len(t.cell(record, name)) > maxNameBytes && (name == "form" || name == "item_id" || name == "version") {
+			bad(badValue, name, "the cell is longer than %s; shorten it, or check the quotation marks of this row", nameLimit)
 			return
 		}
 	}
@@ -151,25 +155,23 @@ func (s *formSet) readEntry(t *table, record []string, c *catalogue, problems *P
 			e.order = nil
 		}
 	}
-	for _, before := range f.entries {
-		if before.position == position {
-			bad(duplicateOnForm, "position", "row %d has the same form and position; number the items of a form differently", before.row)
-			break
-		}
+	if before, twice := f.byPlace[position]; twice {
+		bad(duplicateOnForm, "position", "row %d has the same form and position; number the items of a form differently", before.row)
 	}
 	if before, twice := f.byItem[e.item.ID]; twice {
 		bad(duplicateOnForm, "item_id", "row %d has the same item on the same form; remove one of them", before.row)
 		return
 	}
 	if f.byItem == nil {
-		f.byItem = map[string]*formEntry{}
+		f.byItem, f.byPlace = map[string]*formEntry{}, map[int]*formEntry{}
 	}
 	f.byItem[e.item.ID] = e
+	if f.byPlace[position] == nil {
+		f.byPlace[position] = e
+	}
 	f.entries = append(f.entries, e)
 	for _, k := range e.key {
-		if !slices.Contains(e.item.formKeys, k) {
-			e.item.formKeys = append(e.item.formKeys, k)
-		}
+		e.item.keyOnForm(k)
 	}
 }
 

@@ -26,6 +26,8 @@ type grouping struct {
 	several uint16            // what several labels become
 	found   bool              // some file has the column
 	faulty  bool              // some cell could not be used
+
+	notStated int // records that stay and have no stated label
 }
 
 func newGrouping(name string, rule dif.GroupingRule) *grouping {
@@ -60,7 +62,7 @@ func (g *grouping) read(cell string, t *table, problems *Problems) uint16 {
 	code, known := g.cells[cell]
 	if !known {
 		code = g.classify(strings.TrimSpace(cell))
-		if len(g.cells) < 4*maxLabels {
+		if len(g.cells) < 4*maxLabels && len(cell) <= maxNameBytes {
 			g.cells[strings.Clone(cell)] = code
 		}
 	}
@@ -73,6 +75,8 @@ func (g *grouping) read(cell string, t *table, problems *Problems) uint16 {
 	case code == codeSeveral:
 		problems.add(severalLabels, t.name, t.row, g.name,
 			"the cell holds several labels; declare in the plan what they become (groupings.%s.several: not_stated, or a label)", g.name)
+	case slices.ContainsFunc(strings.Split(cell, ";"), longLabel):
+		problems.add(badValue, t.name, t.row, g.name, "the label is longer than %s; shorten it, or check the quotation marks of this row", nameLimit)
 	case !utf8.ValidString(cell):
 		problems.add(badEncoding, t.name, t.row, g.name, "the cell is not UTF-8; save the file as UTF-8")
 	case len(g.labels) == maxLabels:
@@ -110,11 +114,13 @@ func (g *grouping) classify(cell string) uint16 {
 			return codeSeveral
 		}
 		return first
-	case !utf8.ValidString(cell) || len(g.rule.Labels) > 0:
+	case !utf8.ValidString(cell) || len(g.rule.Labels) > 0 || longLabel(cell):
 		return codeUndeclared
 	}
 	return g.learn(cell)
 }
+
+func longLabel(label string) bool { return len(strings.TrimSpace(label)) > maxNameBytes }
 
 // combine returns the label of a candidate with the labels a and b; several where
 // they differ. A stated label outweighs one that is not.

@@ -15,16 +15,16 @@ func (r *reading) checkIdentifiers(order []int32) {
 	r.records.runs(order, false, func(run []int32) { s.add(r.records.ids.At(int(run[0]))) })
 	name := r.responses.name
 	if n := s.rounded; n > 0 && float64(n) > 2*s.expected {
-		r.count(identifiersEndInZeros, n, Occurrence{File: name, Column: candidateColumn, Message: strconv.Itoa(n) +
-			" identifiers of more than 15 digits end in zeros or are written with an exponent, as after a spreadsheet rounded them; different candidates may have become one. Take the identifiers from the source again, as text"})
+		r.count(identifiersEndInZeros, n, Occurrence{File: name, Column: candidateColumn, Message: plural(n, "identifier") +
+			either(n, " of more than 15 digits ends in zeros or is written with an exponent, as after a spreadsheet rounded it;", " of more than 15 digits end in zeros or are written with an exponent, as after a spreadsheet rounded them;") + " different candidates may have become one. Take the identifiers from the source again, as text"})
 	}
 	if s.numeric < s.all-s.all/10 || len(s.lengths) < 2 || s.dense() {
 		return
 	}
 	mode, shorter := s.mode()
 	if mode >= 5 && shorter > 0 && float64(s.lengths[mode]) >= 0.8*float64(s.numeric) {
-		r.count(identifiersLostZeros, shorter, Occurrence{File: name, Column: candidateColumn, Message: strconv.Itoa(shorter) +
-			" identifiers are shorter than the " + strconv.Itoa(mode) + " digits of most, as after a spreadsheet dropped leading zeros; they may not match other files. Take the identifiers from the source again, as text"})
+		r.count(identifiersLostZeros, shorter, Occurrence{File: name, Column: candidateColumn, Message: are(shorter, "identifier") +
+			" shorter than the " + strconv.Itoa(mode) + " digits of most, as after a spreadsheet dropped leading zeros; " + either(shorter, "it", "they") + " may not match other files. Take the identifiers from the source again, as text"})
 		return
 	}
 	if s.rounded == 0 {

@@ -15,12 +15,13 @@ type item struct {
 	dif.Item
 	file       string // where it is described
 	row        int
-	scoreGiven bool // max_score was declared
-	broken     bool // its description could not be used
-	given      bool // some row of a long file names it
-	absent     bool // no column, or no row of a long file, names it
-	suspect    bool // presumed an item until a cell showed otherwise
-	formKeys   []string
+	scoreGiven bool            // max_score was declared
+	broken     bool            // its description could not be used
+	given      bool            // some row of a long file names it, or one of its versions
+	absent     bool            // no column of a wide file names it
+	suspect    bool            // presumed an item until a cell showed otherwise
+	formKeys   []string        // key labels of forms, each once
+	onForm     map[string]bool // the same
 	enc        *encoder
 	index      int // place in the data
 }
@@ -30,33 +31,45 @@ func (it *item) raw() bool {
 	return len(it.Key) > 0 || it.Options != nil || len(it.formKeys) > 0
 }
 
+// keyOnForm takes over a key label of a form.
+func (it *item) keyOnForm(label string) {
+	if it.onForm == nil {
+		it.onForm = map[string]bool{}
+	}
+	if !it.onForm[label] {
+		it.onForm[label] = true
+		it.formKeys = append(it.formKeys, label)
+	}
+}
+
 // catalogue holds the items known so far.
 type catalogue struct {
 	items    []*item
 	byID     map[string][]*item
+	exact    map[itemVersion]*item
 	declared bool // an items file was given
 }
 
-func newCatalogue() *catalogue { return &catalogue{byID: map[string][]*item{}} }
+type itemVersion struct{ id, version string }
+
+func newCatalogue() *catalogue {
+	return &catalogue{byID: map[string][]*item{}, exact: map[itemVersion]*item{}}
+}
 
 func (c *catalogue) add(it *item) {
 	c.items = append(c.items, it)
 	c.byID[it.ID] = append(c.byID[it.ID], it)
+	c.exact[itemVersion{it.ID, it.Version}] = it
 }
 
 // version returns the item with an identifier and version; an empty version means
 // the only one. false where there is none or several.
 func (c *catalogue) version(id, version string) (*item, bool) {
-	versions := c.byID[id]
-	if version == "" && len(versions) == 1 {
+	if versions := c.byID[id]; version == "" && len(versions) == 1 {
 		return versions[0], true
 	}
-	for _, it := range versions {
-		if it.Version == version {
-			return it, true
-		}
-	}
-	return nil, false
+	it, known := c.exact[itemVersion{id, version}]
+	return it, known
 }
 
 var itemColumns = []string{"item_id", "version", "key", "max_score", "options", "content_area", "role"}
@@ -64,7 +77,7 @@ var itemColumns = []string{"item_id", "version", "key", "max_score", "options", 
 // readItems reads the items file into the catalogue.
 func readItems(ctx context.Context, f *File, c *catalogue, problems *Problems) (*table, error) {
 	c.declared = true
-	t, err := openTable(f, problems)
+	t, err := openTable(f, newHeaderRule(1, itemColumns, strings.Join(itemColumns, ", ")+" (item_id is required)"), problems)
 	if t == nil {
 		return nil, err
 	}
@@ -135,11 +148,17 @@ func readItem(t *table, record []string, problems *Problems) *item {
 		if value != t.cell(record, name) {
 			bad(badEncoding, name, "the cell is not UTF-8; save the file as UTF-8")
 		}
+		if len(value) > maxNameBytes && name != "key" && name != "options" {
+			bad(badValue, name, "the cell is longer than %s; shorten it, or check the quotation marks of this row", nameLimit)
+			return ""
+		}
 		return strings.Clone(value)
 	}
 	it.ID = cell("item_id")
 	if it.ID == "" {
-		bad(badValue, "item_id", "the row has no item identifier; give one or remove the row")
+		if t.cell(record, "item_id") == "" {
+			bad(badValue, "item_id", "the row has no item identifier; give one or remove the row")
+		}
 		return nil
 	}
 	it.Version = cell("version")
@@ -204,18 +223,23 @@ func options(text string) ([]string, error) {
 
 // labels reads labels joined by |.
 func labels(text string) ([]string, error) {
+	if n := 1 + strings.Count(text, "|"); n > maxChoices {
+		return nil, fmt.Errorf("%d labels are too many; %d is the limit", n, maxChoices)
+	}
 	parts := strings.Split(text, "|")
 	for i, p := range parts {
 		parts[i] = strings.TrimSpace(p)
-		if parts[i] == "" {
+		switch {
+		case parts[i] == "":
 			return nil, fmt.Errorf("%s has an empty part; join labels with a single |", quoted(text))
-		}
-		if slices.Contains(parts[:i], parts[i]) {
-			return nil, fmt.Errorf("%s names a label twice; name each once", quoted(text))
+		case len(parts[i]) > maxNameBytes:
+			return nil, fmt.Errorf("a label is longer than %s; shorten it, or join labels with |", nameLimit)
 		}
 	}
-	if len(parts) > maxChoices {
-		return nil, fmt.Errorf("%d labels are too many; %d is the limit", len(parts), maxChoices)
+	sorted := slices.Clone(parts)
+	slices.Sort(sorted)
+	if len(slices.Compact(sorted)) < len(parts) {
+		return nil, fmt.Errorf("%s names a label twice; name each once", quoted(text))
 	}
 	return parts, nil
 }

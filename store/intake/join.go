@@ -100,6 +100,7 @@ func (r *reading) countNotStated(used []bool) {
 		}
 		for i, code := range codes {
 			if code == 0 && used[i] {
+				r.groupings[g].notStated++
 				r.problems.add(emptyLabel, r.responses.name, int(r.records.rows[i]), name,
 					"the candidate of this row has no stated label; it is left out of comparisons of %s and counted as not stated", shown(name))
 			}

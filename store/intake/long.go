@@ -37,7 +37,7 @@ func (r *reading) readLong(ctx context.Context) error {
 		}
 	}
 	for _, name := range t.header {
-		if r.columnUse(name) == useUndeclared {
+		if ok && r.columnUse(name) == useUndeclared {
 			r.problems.add(undeclaredColumn, t.name, t.row, name,
 				"a long response file has the columns candidate_id, item_id, response and perhaps form and attempt; declare this one with --ignore, and put groupings into the candidates file")
 		}
@@ -113,12 +113,11 @@ func (l *long) row(record []string) bool {
 		l.lost = true
 		return true
 	case offForm:
-		it.given = true
 		l.offForm(strings.TrimSpace(cell), it.ID)
 		return true
 	}
 	it.given = true
-	code, why := it.enc.code(cell)
+	code, why := it.enc.code(cell, t.row)
 	if why != accepted {
 		refused(why, it, cell, "response", t, l.problems)
 	}
@@ -172,6 +171,9 @@ func (l *long) find(id string, form int, formKnown bool) (it *item, offForm bool
 	case id == "":
 		l.problems.add(badValue, t.name, t.row, "item_id", "the row has no item identifier; give one or remove the row")
 		return nil, false
+	case len(id) > maxNameBytes:
+		l.problems.add(badValue, t.name, t.row, "item_id", "the identifier is longer than %s; shorten it, or check the quotation marks of this row", nameLimit)
+		return nil, false
 	case versions == nil && l.items.declared:
 		l.problems.add(unknownItem, t.name, t.row, "item_id", "item %s is not in the items file; add it there or correct the identifier", shown(id))
 		return nil, false
@@ -198,13 +200,15 @@ func (l *long) find(id string, form int, formKnown bool) (it *item, offForm bool
 		return versions[0], true
 	}
 	if len(versions) > 1 {
+		versions[0].given = true
 		l.problems.add(versionAmbiguous, t.name, t.row, "item_id", "the items file has %d versions of item %s; give a forms file that says which form has which version", len(versions), shown(id))
 		return nil, false
 	}
 	return versions[0], false
 }
 
-// finish puts items and answers into their final order.
+// finish puts items and answers into their final order. An answer that never came
+// is an empty cell, as in a wide file, if nobody gave one to the item.
 func (l *long) finish() {
 	if !l.items.declared {
 		slices.SortFunc(l.items.items, func(a, b *item) int {
@@ -215,9 +219,8 @@ func (l *long) finish() {
 	for i, it := range l.items.items {
 		place[it.index] = i
 		it.index = i
-		if !it.given {
-			it.absent = true
-			l.problems.add(itemColumnAbsent, l.responses.name, 0, shown(it.ID), "no row holds an answer to this item; it counts as not presented to anybody")
+		if versions := l.items.byID[it.ID]; len(versions) > 1 && it == versions[0] && !it.given && !l.forms.set.declared {
+			l.problems.add(versionAmbiguous, it.file, it.row, "version", "no row of the response file names item %s, which has %d versions; give a forms file that says which form has which version", shown(it.ID), len(versions))
 		}
 	}
 	rec := l.records
@@ -225,11 +228,6 @@ func (l *long) finish() {
 	for i := range rec.rows {
 		row := rec.answers.Append()
 		l.pairs.fill(i, row, place)
-		for k, it := range l.items.items {
-			if it.absent {
-				row[k] = dif.CodeNotPresented
-			}
-		}
 		l.pairs.release(i)
 	}
 	if len(rec.rows) > 0 && len(l.items.items) == 0 {

@@ -14,13 +14,7 @@ func (r *reading) notes(d *dif.Data) []string {
 	note := func(format string, args ...any) { out = append(out, fmt.Sprintf(format, args...)) }
 	note("taken as items: %s", itemList(d.Items))
 	for _, g := range d.Groupings {
-		notStated := 0
-		for _, c := range g.Codes {
-			if c == 0 {
-				notStated++
-			}
-		}
-		note("grouping %s: %s, %d of %d candidates not stated", shown(g.Name), plural(len(g.Labels), "label"), notStated, len(g.Codes))
+		note("grouping %s: %s", shown(g.Name), labelCounts(g))
 	}
 	if len(d.Forms) > 0 {
 		note("forms: %d", len(d.Forms))
@@ -58,6 +52,28 @@ func (r *reading) notes(d *dif.Data) []string {
 	return out
 }
 
+// labelCounts lists the labels of a grouping with their candidates, the first ones
+// where there are many.
+func labelCounts(g dif.Grouping) string {
+	const most = 50
+	counts := make([]int, len(g.Labels)+1)
+	for _, c := range g.Codes {
+		counts[c]++
+	}
+	var parts []string
+	for i, label := range g.Labels[:min(len(g.Labels), most)] {
+		parts = append(parts, fmt.Sprintf("%s %d", shown(label), counts[i+1]))
+	}
+	if more := len(g.Labels) - len(parts); more > 0 {
+		rest := 0
+		for _, n := range counts[1+most:] {
+			rest += n
+		}
+		parts = append(parts, fmt.Sprintf("%s with %s", plural(more, "more label"), plural(rest, "candidate")))
+	}
+	return strings.Join(append(parts, fmt.Sprintf("not stated %d", counts[0])), ", ")
+}
+
 // flow returns what was dropped between receipt and analysis.
 func (r *reading) flow(d *dif.Data) string {
 	var b strings.Builder
@@ -68,19 +84,12 @@ func (r *reading) flow(d *dif.Data) string {
 		}
 		left -= e.Count
 		what := map[string]string{
-			dif.ExcludedExactDuplicate: "exact copies collapsed",
-			dif.ExcludedOtherAttempt:   "other attempts left out",
+			dif.ExcludedExactDuplicate: either(e.Count, "exact copy", "exact copies") + " collapsed",
+			dif.ExcludedOtherAttempt:   either(e.Count, "other attempt", "other attempts") + " left out",
 		}[e.Reason]
 		fmt.Fprintf(&b, ", %d %s (%d left)", e.Count, what, left)
 	}
 	return b.String()
-}
-
-func plural(n int, what string) string {
-	if n == 1 {
-		return "1 " + what
-	}
-	return fmt.Sprintf("%d %ss", n, what)
 }
 
 // itemList names items with their maxima, all of them where they are few.

@@ -59,7 +59,7 @@ func ReadPlan(name string, r io.Reader) (dif.Plan, error) {
 	var named []error
 	for i, fault := range p.faults {
 		if i == maxPlanFaults {
-			named = append(named, fmt.Errorf("%s: and %d more faults", name, len(p.faults)-i))
+			named = append(named, fmt.Errorf("%s: and %s", name, plural(len(p.faults)-i, "more fault")))
 			break
 		}
 		var at *lineError

@@ -98,44 +98,66 @@ seed: -7
 	}
 }
 
+// Brackets and dashes within text and comments nest nothing.
+func TestBracketsInText(t *testing.T) {
+	t.Parallel()
+	many := strings.Repeat("[{", 30) + strings.Repeat("- ", 30)
+	for name, title := range map[string]string{
+		"double quotes": `"` + many + `\" [` + `"`, "single quotes": "'" + many + "'' ['", "plain": "see " + many, "comment": "x # " + many,
+		"block": "|\n  " + many + "\n", "two lines": "\"" + many + "\n  " + many + "\"",
+	} {
+		plan, err := ReadPlan("plan.yaml", strings.NewReader("# "+many+"\n"+minimalPlan+"missing: {omitted: [-, \"[\", '{', 9]}\ntitle: "+title+"\n"))
+		if err != nil || name != "comment" && !strings.Contains(plan.Title, strings.TrimSpace(many)) {
+			t.Errorf("%s: title %q, %v", name, plan.Title, err)
+		}
+		if diff := cmp.Diff([]string{"-", "[", "{", "9"}, plan.Missing.Omitted); err == nil && diff != "" {
+			t.Errorf("%s: %s", name, diff)
+		}
+	}
+}
+
 func TestReadPlanFaults(t *testing.T) {
 	t.Parallel()
 	for name, c := range map[string]struct{ text, words string }{
-		"unknown key":           {minimalPlan + "colour: red\n", "plan.yaml, line 3: the plan has no key colour"},
-		"unknown inner key":     {minimalPlan + "missing:\n  omited: [9]\n", "line 4: missing has no key omited"},
-		"unknown key in list":   {"comparisons:\n  - grouping: sex\n    reference: m\n    focus: f\n", "line 4: comparisons[1] has no key focus"},
-		"repeated key":          {minimalPlan + "seed: 1\nseed: 2\n", "line 4: the key seed stands here and in line 3"},
-		"repeated key in JSON":  {"{\"seed\": 1,\n\"seed\": 2}", "line 2: the key seed stands here and in line 1"},
-		"unknown key in JSON":   {"{\"seed\": 1,\n\n\"sed\": 2}", "line 3: the plan has no key sed"},
-		"irt":                   {minimalPlan + "irt:\n  model: 2pl\n", "line 3: irt: item response models are not part of this version"},
-		"anchor":                {"title: &t x\n" + minimalPlan, "line 1: anchors and aliases"},
-		"alias":                 {minimalPlan + "title: *t\n", "line 3: anchors and aliases"},
-		"merge":                 {minimalPlan + "criteria:\n  <<: {name: x}\n", "line 4"},
-		"tag":                   {minimalPlan + "title: !!str 7\n", "line 3: tags"},
-		"two documents":         {minimalPlan + "---\n" + minimalPlan, "a second document"},
-		"empty":                 {"", "the plan is empty"},
-		"only a comment":        {"# nothing\n", "the plan is empty"},
-		"a list":                {"- a\n- b\n", "holds keys with values"},
-		"broken YAML":           {"comparisons: [\n", "not valid YAML"},
-		"broken JSON":           {"{\"seed\": 1,\n", "not valid JSON"},
-		"two JSON documents":    {"{\"seed\": 1}\n{}", "something follows the plan"},
-		"no value":              {minimalPlan + "title:\n", "line 3: title has no value"},
-		"text for a list":       {minimalPlan + "missing: {omitted: 9}\n", "line 3: missing.omitted is a list"},
-		"list for a text":       {minimalPlan + "title: [a]\n", "line 3: title is a single value"},
-		"text for a number":     {minimalPlan + "criteria: {min_total: many}\n", "line 3: criteria.min_total is a whole number"},
-		"text for truth":        {minimalPlan + "criteria: {continuity_correction: yes}\n", "criteria.continuity_correction is true or false"},
-		"not a number":          {minimalPlan + "criteria: {class_alpha: .nan}\n", "line 3: criteria.class_alpha"},
-		"a value refused":       {minimalPlan + "matching:\n  variable: totals\n", "line 4: matching.variable: \"totals\" is not a value"},
-		"a value of later":      {minimalPlan + "matching:\n  levels: thick\n", "line 4: matching.levels: thick is not part of this version"},
-		"a method of later":     {minimalPlan + "methods: [logistic]\n", "line 3: methods: logistic is not part of this version"},
-		"a comparison refused":  {minimalPlan + "  - {grouping: sex, reference: m, focal: m}\n", "line 3: comparisons[2]: reference and focal must be different"},
-		"no comparison":         {"seed: 3\n", "comparisons: name at least one"},
-		"too long":              {minimalPlan + strings.Repeat("#", 1<<20), "longer than 1 MiB"},
-		"many lines":            {strings.Repeat("-\n", 500_000), "the limit"},
-		"many keys":             {"{" + strings.Repeat("k: 1, ", 15_000) + "}", "the key k stands here"},
-		"nested deep":           {"title: " + strings.Repeat("[", 100_000), "nests deeper"},
-		"nested deep in JSON":   {"{\"title\": " + strings.Repeat("[", 100_000), "nests deeper"},
-		"nested deep by dashes": {strings.Repeat("- ", 100_000), "nests deeper"},
+		"unknown key":                    {minimalPlan + "colour: red\n", "plan.yaml, line 3: the plan has no key colour"},
+		"unknown inner key":              {minimalPlan + "missing:\n  omited: [9]\n", "line 4: missing has no key omited"},
+		"unknown key in list":            {"comparisons:\n  - grouping: sex\n    reference: m\n    focus: f\n", "line 4: comparisons[1] has no key focus"},
+		"repeated key":                   {minimalPlan + "seed: 1\nseed: 2\n", "line 4: the key seed stands here and in line 3"},
+		"repeated key in JSON":           {"{\"seed\": 1,\n\"seed\": 2}", "line 2: the key seed stands here and in line 1"},
+		"unknown key in JSON":            {"{\"seed\": 1,\n\n\"sed\": 2}", "line 3: the plan has no key sed"},
+		"irt":                            {minimalPlan + "irt:\n  model: 2pl\n", "line 3: irt: item response models are not part of this version"},
+		"anchor":                         {"title: &t x\n" + minimalPlan, "line 1: anchors and aliases"},
+		"alias":                          {minimalPlan + "title: *t\n", "line 3: anchors and aliases"},
+		"merge":                          {minimalPlan + "criteria:\n  <<: {name: x}\n", "line 4"},
+		"tag":                            {minimalPlan + "title: !!str 7\n", "line 3: tags"},
+		"two documents":                  {minimalPlan + "---\n" + minimalPlan, "a second document"},
+		"empty":                          {"", "the plan is empty"},
+		"only a comment":                 {"# nothing\n", "the plan is empty"},
+		"a list":                         {"- a\n- b\n", "holds keys with values"},
+		"broken YAML":                    {"comparisons: [\n", "not valid YAML"},
+		"open quotation mark":            {minimalPlan + "title: \"x\n", "not valid YAML"},
+		"broken JSON":                    {"{\"seed\": 1,\n", "not valid JSON"},
+		"two JSON documents":             {"{\"seed\": 1}\n{}", "something follows the plan"},
+		"no value":                       {minimalPlan + "title:\n", "line 3: title has no value"},
+		"text for a list":                {minimalPlan + "missing: {omitted: 9}\n", "line 3: missing.omitted is a list"},
+		"list for a text":                {minimalPlan + "title: [a]\n", "line 3: title is a single value"},
+		"text for a number":              {minimalPlan + "criteria: {min_total: many}\n", "line 3: criteria.min_total is a whole number"},
+		"text for truth":                 {minimalPlan + "criteria: {continuity_correction: yes}\n", "criteria.continuity_correction is true or false"},
+		"not a number":                   {minimalPlan + "criteria: {class_alpha: .nan}\n", "line 3: criteria.class_alpha"},
+		"a value refused":                {minimalPlan + "matching:\n  variable: totals\n", "line 4: matching.variable: \"totals\" is not a value"},
+		"a value of later":               {minimalPlan + "matching:\n  levels: thick\n", "line 4: matching.levels: thick is not part of this version"},
+		"a method of later":              {minimalPlan + "methods: [logistic]\n", "line 3: methods: logistic is not part of this version"},
+		"a comparison refused":           {minimalPlan + "  - {grouping: sex, reference: m, focal: m}\n", "line 3: comparisons[2]: reference and focal must be different"},
+		"no comparison":                  {"seed: 3\n", "comparisons: name at least one"},
+		"too long":                       {minimalPlan + strings.Repeat("#", 1<<20), "longer than 1 MiB"},
+		"many lines":                     {strings.Repeat("-\n", 500_000), "the limit"},
+		"many keys":                      {"{" + strings.Repeat("k: 1, ", 15_000) + "}", "the key k stands here"},
+		"nested deep":                    {"title: " + strings.Repeat("[", 10_000), "nests deeper"},
+		"nested in flow and dashes":      {"title: [" + strings.Repeat("- ", 30), "nests deeper"},
+		"nested behind a quotation mark": {"title: a \" b\nseed: " + strings.Repeat("[", 30) + "\"", "nests deeper"},
+		"many brackets":                  {"title: " + strings.Repeat("[", 100_000), "the limit"},
+		"nested deep in JSON":            {"{\"title\": " + strings.Repeat("[", 100_000), "nests deeper"},
+		"nested deep by dashes":          {strings.Repeat("- ", 10_000), "nests deeper"},
 	} {
 		_, err := ReadPlan("plan.yaml", strings.NewReader(c.text))
 		if err == nil || !strings.Contains(err.Error(), c.words) || !strings.HasPrefix(err.Error(), "plan.yaml") {

@@ -30,7 +30,7 @@ const (
 // Bounds of a plan, far above what plans need, so that reading one stays quick.
 const (
 	maxPlanDepth  = 20     // levels of nesting
-	maxPlanParts  = 20_000 // lines and commas of YAML
+	maxPlanSigns  = 40_000 // line ends, commas, colons, brackets and quotation marks of YAML
 	maxPlanFields = 5_000  // entries of one mapping
 )
 

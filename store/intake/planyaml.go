@@ -3,30 +3,30 @@ package intake
 import (
 	"bytes"
 	"errors"
+	"io"
 
 	"github.com/goccy/go-yaml"
 	"github.com/goccy/go-yaml/ast"
 	"github.com/goccy/go-yaml/parser"
+	"github.com/goccy/go-yaml/scanner"
+	"github.com/goccy/go-yaml/token"
 )
 
 // parsePlanYAML returns the tree of a YAML document.
 func parsePlanYAML(content []byte) (node planNode, err error) {
-	if line, deep := deepest(content); deep > maxPlanDepth {
-		return node, atLine(line, "the plan nests deeper than %d levels", maxPlanDepth)
-	}
-	parts := 0
-	for _, c := range []string{"\n", "\r", ","} {
-		parts += bytes.Count(content, []byte(c))
-	}
-	if parts -= bytes.Count(content, []byte("\r\n")); parts > maxPlanParts {
-		return node, atLine(0, "the plan has %d lines and commas, and %d is the limit", parts, maxPlanParts)
+	if n := signs(content); n > maxPlanSigns {
+		return node, atLine(0, "the plan has %d line ends and signs such as commas, colons and brackets, and %d is the limit", n, maxPlanSigns)
 	}
 	defer func() {
 		if recover() != nil {
 			err = atLine(0, "the plan cannot be read as YAML")
 		}
 	}()
-	file, err := parser.ParseBytes(content, 0, parser.AllowDuplicateMapKey())
+	tokens, err := tokenize(content)
+	if err != nil {
+		return node, err
+	}
+	file, err := parser.Parse(tokens, 0, parser.AllowDuplicateMapKey())
 	if err != nil {
 		var at yaml.Error
 		if errors.As(err, &at) && at.GetToken() != nil && at.GetToken().Position != nil {
@@ -50,30 +50,53 @@ func parsePlanYAML(content []byte) (node planNode, err error) {
 	return fromYAML(body, 0)
 }
 
-// deepest returns the line of the deepest nesting and its depth: by brackets, without
-// regard to quotation marks, and by the dashes, question marks and colons that start a line.
-func deepest(content []byte) (line, depth int) {
-	brackets := 0
-	for n, text := range bytes.Split(content, []byte("\n")) {
-		starts, starting := 0, true
-		for _, c := range text {
-			switch c {
-			case '[', '{':
-				brackets++
-			case ']', '}':
-				brackets = max(0, brackets-1)
-			case '-', '?', ':':
-				if starting {
-					starts++
-				}
+// tokenize returns the tokens of a YAML text. It stops where they nest too deep, by
+// the brackets that are open and the dashes and question marks in a row.
+// Brackets within quotation marks, plain text and comments are no tokens.
+func tokenize(content []byte) (token.Tokens, error) {
+	var source scanner.Scanner
+	source.Init(string(content))
+	var tokens token.Tokens
+	brackets, starts, line := 0, 0, 0
+	for {
+		some, err := source.Scan()
+		if errors.Is(err, io.EOF) {
+			return tokens, nil
+		}
+		for _, t := range some {
+			if t.Position.Line != line {
+				line, starts = t.Position.Line, 0
 			}
-			starting = starting && (c == ' ' || c == '-' || c == '?' || c == ':')
-			if brackets+starts/2 > depth {
-				line, depth = n+1, brackets+starts/2
+			switch t.Type {
+			case token.SequenceStartType, token.MappingStartType:
+				brackets++
+			case token.SequenceEndType, token.MappingEndType:
+				brackets = max(0, brackets-1)
+			case token.SequenceEntryType, token.MappingKeyType:
+				starts++
+			case token.CollectEntryType:
+				starts = 0
+			}
+			if brackets+starts > maxPlanDepth {
+				return nil, atLine(line, "the plan nests deeper than %d levels", maxPlanDepth)
 			}
 		}
+		if tokens.Add(some...); err != nil {
+			return tokens, nil // the last token stands for what is no YAML; the parser reports it
+		}
 	}
-	return line, depth
+}
+
+// signs counts the line ends and the characters that can separate the parts of a YAML text.
+func signs(content []byte) int {
+	n := bytes.Count(content, []byte("- ")) - bytes.Count(content, []byte("\r\n"))
+	for _, c := range content {
+		switch c {
+		case '\n', '\r', ',', ':', '[', ']', '{', '}', '?', '&', '*', '"', '\'':
+			n++
+		}
+	}
+	return n
 }
 
 func fromYAML(n ast.Node, depth int) (planNode, error) {

@@ -2,7 +2,6 @@ package intake
 
 import (
 	"fmt"
-	"io"
 	"strconv"
 	"strings"
 	"unicode/utf8"
@@ -45,7 +44,10 @@ type Occurrence struct {
 }
 
 // String returns place and message in one sentence.
-func (o Occurrence) String() string {
+func (o Occurrence) String() string { return o.place() + ": " + o.Message }
+
+// place names file, row and column.
+func (o Occurrence) place() string {
 	place := o.File
 	if o.Row > 0 {
 		place += fmt.Sprintf(", row %d", o.Row)
@@ -53,7 +55,7 @@ func (o Occurrence) String() string {
 	if o.Column != "" {
 		place += ", column " + o.Column
 	}
-	return place + ": " + o.Message
+	return place
 }
 
 // Error returns a one-line summary.
@@ -96,29 +98,6 @@ func (p *Problems) Count(kind string) int {
 	return 0
 }
 
-// printedOccurrences is how many occurrences of one kind Print shows.
-const printedOccurrences = 20
-
-// Print writes every kind with its first occurrences, for a terminal.
-func (p *Problems) Print(w io.Writer) error {
-	var b strings.Builder
-	for _, k := range p.Kinds {
-		fmt.Fprintf(&b, "%s %s, %d: %s\n", k.Severity, k.Kind, k.Count, k.About)
-		shown := k.Occurrences
-		if len(shown) > printedOccurrences && k.Kind != undeclaredBlanks {
-			shown = shown[:printedOccurrences]
-		}
-		for _, o := range shown {
-			fmt.Fprintf(&b, "  %s\n", o)
-		}
-		if more := k.Count - len(shown); more > 0 && k.Kind != undeclaredBlanks && len(shown) == printedOccurrences {
-			fmt.Fprintf(&b, "  and %d more\n", more)
-		}
-	}
-	_, err := io.WriteString(w, b.String())
-	return err
-}
-
 // add counts one occurrence and keeps it while the kind has room.
 func (p *Problems) add(kind, file string, row int, column, format string, args ...any) {
 	k := p.kind(kind)
@@ -155,12 +134,14 @@ func (p *Problems) settle() {
 	p.Kinds = append(errors, warnings...)
 }
 
-// quoted returns the value of an item cell for a message: quoted, and cut to 40 characters.
+// maxQuoted is how many characters of an item cell a message shows.
+const maxQuoted = 40
+
+// quoted returns the value of an item cell for a message: quoted, and cut.
 func quoted(value string) string {
-	const limit = 40
 	n := 0
 	for i := range value {
-		if n == limit {
+		if n == maxQuoted {
 			return strconv.Quote(value[:i]) + " (cut)"
 		}
 		n++

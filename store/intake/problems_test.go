@@ -17,6 +17,9 @@ const (
 	keyedRows = "candidate_id,sex,Q1,Q2\na,m,A,B\nb,f,C,D\n"
 )
 
+// long1001 is one byte longer than a name may be.
+var long1001 = strings.Repeat("z", 1001)
+
 func zipped(text string) string {
 	var b bytes.Buffer
 	z := gzip.NewWriter(&b)
@@ -58,9 +61,16 @@ var problemCases = []struct {
 	{endlessLine, input{responses: "candidate_id,sex,Q1\na,m,\"" + strings.Repeat("1", 3<<20)}, "responses.csv", 2, "", "unclosed quotation mark"},
 	{unreadableGzip, input{responses: zipped(fourRows)[:40]}, "responses.csv", 0, "", "send it again"},
 	{gzipRatio, input{responses: zipped(fourRows + strings.Repeat("e,f,0,0\n", 3<<20))}, "responses.csv", 0, "", "send it unpacked"},
-	{badQuoting, input{responses: fourRows + "e,\"m\"x,1,1\n"}, "responses.csv", 6, "", "double those inside"},
-	{badQuoting, input{responses: fourRows + "e,m\"x,1,1\n"}, "responses.csv", 6, "", "in quotation marks"},
+	{badQuoting, input{responses: fourRows + "e,\"m\"x,1,1\n"}, "responses.csv", 6, "", "those after it were not read"},
+	{badQuoting, input{responses: "candidate_id,se\"x,Q1\na,m,1\n"}, "responses.csv", 1, "", "Without its header"},
+	{badQuoting, input{responses: fourRows + "e,m\"x,1,1\n"}, "responses.csv", 6, "", "This row was not read"},
 	{tooLarge, input{responses: "candidate_id" + strings.Repeat(",x", 10_000) + "\n"}, "responses.csv", 1, "", "10000 is the limit"},
+	{noHeader, input{responses: "a,m,1,0\nb,f,0,1\n"}, "responses.csv", 1, "", "candidate_id, item_id and response"},
+	{noHeader, input{responses: "a,m,1,1\nb,f,0,1\n", items: "item_id,max_score\n1,1\n2,1\n"}, "responses.csv", 1, "", "looks like data"},
+	{noHeader, input{responses: "candidate_id|sex|Q1\na|m|1\n"}, "responses.csv", 1, "", "comma, semicolon or tab"},
+	{noHeader, input{responses: fourRows, items: "Q1,A\nQ2,B\n"}, "items.csv", 1, "", "item_id is required"},
+	{noHeader, input{responses: fourRows, forms: "F,1,Q1\nF,2,Q2\n"}, "forms.csv", 1, "", "the first three are required"},
+	{noHeader, input{responses: fourRows, candidates: "a,m\nb,f\n"}, "candidates.csv", 1, "", "one column per grouping"},
 	{duplicateColumn, input{responses: "candidate_id,sex,Q1,Q1\na,m,1,1\nb,f,0,1\n"}, "responses.csv", 1, "Q1", "columns 3 and 4"},
 	{unnamedColumn, input{responses: "candidate_id,sex,Q1,\na,m,1,\nb,f,0,7\n"}, "responses.csv", 3, "4", "name or remove it"},
 	{missingColumn, input{responses: "id,sex,Q1\na,m,1\n"}, "responses.csv", 1, "candidate_id", "first row must hold the names"},
@@ -77,6 +87,17 @@ var problemCases = []struct {
 	{noCandidates, input{responses: "candidate_id,sex,Q1\n"}, "responses.csv", 0, "", "no row below it"},
 	{noItems, input{responses: "candidate_id,sex\na,m\nb,f\n"}, "responses.csv", 1, "", "no column holds answers"},
 	{badValue, input{responses: fourRows, items: "item_id,max_score\nQ1,300\nQ2,1\n"}, "items.csv", 2, "max_score", "0 to 249"},
+	{badValue, input{responses: fourRows + long1001 + ",m,1,1\n"}, "responses.csv", 6, "candidate_id", "longer than 1,000 bytes"},
+	{badValue, input{responses: fourRows + "e," + long1001 + ",1,1\n"}, "responses.csv", 6, "sex", "longer than 1,000 bytes"},
+	{badValue, input{responses: "candidate_id,sex,form,Q1\na,m,F,1\nb,f," + long1001 + ",1\n"}, "responses.csv", 3, "form", "longer than 1,000 bytes"},
+	{badValue, input{responses: "candidate_id,sex,Q1," + long1001 + "\na,m,1,1\nb,f,0,1\n"}, "responses.csv", 1, "4", "longer than 1,000 bytes"},
+	{badValue, input{responses: keyedRows + "c,m," + long1001 + ",A\n", items: "item_id,key\nQ1,A\nQ2,B\n"}, "responses.csv", 4, "Q1", "longer than 1,000 bytes"},
+	{badValue, input{responses: keyedRows + "c,m," + long1001 + ",A\n", items: "item_id,key\nQ1,\nQ2,B\n"}, "responses.csv", 4, "Q1", "longer than 1,000 bytes"},
+	{badValue, input{responses: "candidate_id,item_id,response\na,Q1,1\nb," + long1001 + ",1\nb,Q1,1\n", candidates: "candidate_id,sex\na,m\nb,f\n"}, "responses.csv", 3, "item_id", "longer than 1,000 bytes"},
+	{badValue, input{responses: fourRows, items: twoItems + long1001 + ",1\n"}, "items.csv", 4, "item_id", "longer than 1,000 bytes"},
+	{badValue, input{responses: keyedRows, items: "item_id,options\nQ1,A|" + long1001 + "\nQ2,4\n"}, "items.csv", 2, "options", "longer than 1,000 bytes"},
+	{badValue, input{responses: fourRows, forms: "form,position,item_id\nF,1,Q1\nF,2,Q2\n" + long1001 + ",1,Q1\n"}, "forms.csv", 4, "form", "longer than 1,000 bytes"},
+	{badValue, input{responses: fourRows, candidates: "candidate_id,sex\na,m\nb,f\nc,m\nd,f\n" + long1001 + ",f\n"}, "candidates.csv", 6, "candidate_id", "longer than 1,000 bytes"},
 	{badValue, input{responses: fourRows, items: "item_id,role\nQ1,anchor\nQ2,\n"}, "items.csv", 2, "role", "operational, pretest or linking"},
 	{badValue, input{responses: fourRows, items: "item_id,options\nQ1,99\nQ2,\n"}, "items.csv", 2, "options", "2 to 26"},
 	{badValue, input{responses: fourRows, items: "item_id,key\nQ1,A||B\nQ2,B\n"}, "items.csv", 2, "key", "empty part"},
@@ -91,6 +112,8 @@ var problemCases = []struct {
 	{valueOutOfRange, input{responses: "candidate_id,sex,external_score,Q1\na,m,NaN,1\nb,f,1,0\n"}, "responses.csv", 2, "external_score", "not a number"},
 	{valueOutOfRange, input{responses: "candidate_id,item_id,response\na,Q1,1\nb,Q1,11\n", candidates: "candidate_id,sex\na,m\nb,f\n"}, "responses.csv", 3, "response", "0 to 10"},
 	{tooManyChoices, input{responses: manyChoices(), items: "item_id,key\nQ1,x1\n"}, "responses.csv", 252, "Q1", "declare its options"},
+	{valueOutOfRange, input{responses: "candidate_id,sex,Q1,Q2\na,m,1,1\nb,f,x,0\nc,m,0,1\n", items: "item_id\nQ1\nQ2\n"}, "responses.csv", 3, "Q1", `"x" is not a score of item Q1`},
+	{valueOutOfRange, input{responses: "candidate_id,item_id,response\na,Q1,1\nb,Q2,1\na,Q2,3.0\nb,Q1,0\n", items: "item_id\nQ1\nQ2\n", candidates: "candidate_id,sex\na,m\nb,f\n"}, "responses.csv", 4, "response", "write it as 3"},
 	{undeclaredBlanks, input{responses: "candidate_id,sex,Q1,Q2\na,m,1,0\nb,f,,1\n"}, "responses.csv", 3, "", "does not say what that means"},
 	{positionUnknown, input{responses: "candidate_id,item_id,response\na,Q1,1\na,Q2,1\nb,Q1,0\n", candidates: "candidate_id,sex\na,m\nb,f\n", plan: emptyIs("by_position")}, "responses.csv", 0, "", "--empty not_presented"},
 	{answerOffForm, input{responses: "candidate_id,sex,form,Q1,Q2\na,m,F,1,1\nb,f,G,0,1\n", forms: "form,position,item_id\nF,1,Q1\nG,1,Q1\nG,2,Q2\n"}, "responses.csv", 2, "Q2", "correct the form of the row"},
@@ -138,6 +161,7 @@ var problemCases = []struct {
 	{identifiersEndInZeros, input{responses: "candidate_id,sex,Q1\n1.23457E+15,m,1\n2,f,0\n"}, "responses.csv", 0, "candidate_id", "as text"},
 	{identifiersLostZeros, input{responses: "candidate_id,sex,Q1\n98765,m,1\n54321,f,0\n24680,m,1\n13579,f,1\n77,f,1\n"}, "responses.csv", 0, "candidate_id", "leading zeros"},
 	{identifiersMixedLength, input{responses: "candidate_id,sex,Q1\n98765,m,1\n5432,f,0\n246801,m,1\n"}, "responses.csv", 0, "candidate_id", "3 different lengths"},
+	{keyMissing, input{responses: "candidate_id,sex,Q1,Q2\na,m,1,3\nb,f,4,1\n", items: "item_id,key,options\nQ1,1,1|2|3|4\nQ2,,\n"}, "items.csv", 3, "Q2", "Give the key, or max_score if these are scores"},
 	{keyMissing, input{responses: keyedRows, items: "item_id,key,options\nQ1,A,4\nQ2,,4\n"}, "items.csv", 3, "Q2", "until its key is given"},
 	{choiceWithoutKey, input{responses: keyedRows, items: "item_id,key,options\nQ1,A,4\nQ2,,\n"}, "responses.csv", 2, "Q2", "2 answers"},
 	{scoreAssumed, input{responses: "candidate_id,sex,Q1,Q2\na,m,A,1\nb,f,C,3\n", items: "item_id,key,options\nQ1,A,4\nQ2,,\n"}, "items.csv", 3, "Q2", "Declare max_score"},
@@ -159,6 +183,9 @@ func TestProblems(t *testing.T) {
 			o := p.kind(c.kind).Occurrences[0]
 			if o.File != c.file || o.Row != c.row || o.Column != c.column {
 				t.Errorf("at %s, row %d, column %q; want %s, row %d, column %q", o.File, o.Row, o.Column, c.file, c.row, c.column)
+			}
+			if strings.Contains(printed(t, p), "zzz") {
+				t.Error("an endless name is printed")
 			}
 			if !strings.Contains(o.Message, c.words) {
 				t.Errorf("message %q lacks %q", o.Message, c.words)
@@ -236,7 +263,7 @@ func TestOccurrencesAreCappedAndCounted(t *testing.T) {
 	if k.Count != 250 || len(k.Occurrences) != maxOccurrences {
 		t.Errorf("%d counted, %d kept; want 250, %d", k.Count, len(k.Occurrences), maxOccurrences)
 	}
-	if !strings.Contains(printed(t, p), "and 230 more") {
+	if !strings.Contains(printed(t, p), "and 150 more") {
 		t.Errorf("the printed text does not say how many more:\n%s", printed(t, p))
 	}
 }

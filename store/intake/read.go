@@ -31,7 +31,7 @@ type Request struct {
 // Result is what reading gives where nothing stops the audit.
 type Result struct {
 	Data     *dif.Data
-	Notes    []string  // what was taken for what, in sentences, to be shown first
+	Notes    []string  // what was taken for what, in sentences, to be shown first; they hold group labels and their counts
 	Problems *Problems // warnings only
 }
 
@@ -96,7 +96,7 @@ func (r *reading) readFiles(ctx context.Context) error {
 		}
 	}
 	if f := r.request.Candidates; f != nil {
-		if r.candidates, err = readCandidates(ctx, f, r.groupings, r.problems); err != nil {
+		if r.candidates, err = readCandidates(ctx, f, r.candidateHeader(), r.groupings, r.problems); err != nil {
 			return err
 		}
 		if r.candidates != nil {
@@ -104,7 +104,7 @@ func (r *reading) readFiles(ctx context.Context) error {
 		}
 	}
 	r.items.prepare(r.missing, r.problems)
-	if r.responses, err = openTable(r.request.Responses, r.problems); err != nil {
+	if r.responses, err = openTable(r.request.Responses, r.responseHeader(), r.problems); err != nil {
 		return err
 	}
 	tables[0] = r.responses

@@ -73,11 +73,11 @@ func TestWideFile(t *testing.T) {
 	if !(d.External[0] != d.External[0]) || d.External[1] != 1.5 || d.External[2] != -2 {
 		t.Errorf("external scores %v", d.External)
 	}
-	if len(d.Warnings) != 1 || d.Warnings[0].Code != emptyLabel || !strings.HasPrefix(d.Warnings[0].Message, "1 ") {
+	if len(d.Warnings) != 1 || d.Warnings[0].Code != emptyLabel || d.Warnings[0].Message != "fewer than 10 candidates without a stated label of the grouping sex" {
 		t.Errorf("warnings %v", d.Warnings)
 	}
 	notes := strings.Join(result.Notes, "\n")
-	for _, words := range []string{"taken as items: 1 item (max 3): Q2; 1 item (max 1): Q1", "grouping sex: 2 labels, 1 of 3", "not used: note", "3 received, 3 to be analysed"} {
+	for _, words := range []string{"taken as items: 1 item (max 3): Q2; 1 item (max 1): Q1", "grouping sex: f 1, m 1, not stated 1", "not used: note", "3 received, 3 to be analysed"} {
 		if !strings.Contains(notes, words) {
 			t.Errorf("notes lack %q:\n%s", words, notes)
 		}
@@ -161,6 +161,38 @@ func TestLongFileAlone(t *testing.T) {
 	}
 	if d.Items[0].ID != "M" || d.Items[0].MaxScore != 2 || d.Items[1].MaxScore != 1 || d.Received != 2 {
 		t.Errorf("items %v, received %d", d.Items, d.Received)
+	}
+}
+
+// In a long file without forms every item of the items file is on the form, also one
+// that nobody answered: what its empty cells mean must be declared.
+func TestLongFileWithAnItemNobodyAnswered(t *testing.T) {
+	t.Parallel()
+	in := input{
+		responses:  "candidate_id,item_id,response\na,Q1,1\nb,Q1,0\n",
+		items:      "item_id,max_score\nQ1,1\nQ2,1\n",
+		candidates: "candidate_id,sex\na,m\nb,f\n",
+	}
+	if p := in.problems(t); p.Count(undeclaredBlanks) != 2 || p.Count(itemColumnAbsent) != 0 {
+		t.Errorf("got:\n%s", printed(t, p))
+	}
+	for empty, want := range map[string][]string{
+		dif.EmptyNotPresented: {"1n", "0n"}, dif.EmptyOmitted: {"1o", "0o"}, dif.EmptyByPosition: {"1r", "0r"},
+	} {
+		in.plan = emptyIs(empty)
+		if diff := cmp.Diff(want, rows(in.good(t).Data)); diff != "" {
+			t.Errorf("%s: %s", empty, diff)
+		}
+	}
+	in.plan = emptyIs(dif.EmptyOmitted)
+	in.forms = "form,position,item_id\nF,1,Q1\n"
+	result := in.good(t)
+	if diff := cmp.Diff([]string{"1n", "0n"}, rows(result.Data)); diff != "" || len(result.Problems.Kinds) != 0 {
+		t.Errorf("not on the form: %s\n%s", diff, printed(t, result.Problems))
+	}
+	in.items, in.forms = "item_id,version,max_score\nQ1,1,1\nQ2,old,1\nQ2,new,1\n", ""
+	if p := in.problems(t); p.Count(versionAmbiguous) != 1 {
+		t.Errorf("versions that no form tells apart; got:\n%s", printed(t, p))
 	}
 }
 

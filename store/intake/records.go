@@ -75,6 +75,10 @@ func (r *formReader) read(cell string, t *table, problems *Problems) (int, bool)
 		problems.add(badEncoding, t.name, t.row, "form", "the cell is not UTF-8; save the file as UTF-8")
 		return 0, false
 	}
+	if len(id) > maxNameBytes {
+		problems.add(badValue, t.name, t.row, "form", "the name of the form is longer than %s; shorten it, or check the quotation marks of this row", nameLimit)
+		return 0, false
+	}
 	f, known := r.set.byID[id]
 	if !known {
 		if r.set.declared {
@@ -99,22 +103,37 @@ func refused(why refusal, it *item, cell, column string, t *table, problems *Pro
 	case why == notUTF8:
 		problems.add(badEncoding, t.name, t.row, column, "the cell is not UTF-8; save the file as UTF-8")
 	case why == noRoom:
-		problems.add(tooManyChoices, t.name, t.row, column,
-			"item %s has more than %d different answers up to this row; declare its options, or its column with --ignore", shown(it.ID), maxChoices)
-	case len(cell) > maxChoiceBytes && it.enc.mode != scored:
-		problems.add(valueOutOfRange, t.name, t.row, column, "%s is too long for a choice; declare the column with --ignore if it is no item", quoted(cell))
+		it.overflows(t.name, t.row, column, problems)
+	case why == tooLong:
+		problems.add(badValue, t.name, t.row, column, "the answer to item %s is longer than %s, which no choice is; declare the column with --ignore if it is no item", shown(it.ID), nameLimit)
 	case it.enc.mode == choices:
 		problems.add(valueOutOfRange, t.name, t.row, column,
 			"%s is not an option of item %s (%s); correct the cell or the options, or declare it as a code of missing answers",
 			quoted(cell), shown(it.ID), quoted(strings.Join(it.Options, "|")))
 	default:
 		advice := "correct the cell, or declare it as a code of missing answers; answers that are choices need a key or options in the items file"
-		if x, err := strconv.ParseFloat(strings.ReplaceAll(cell, ",", "."), 64); err == nil && x >= 0 && x == math.Trunc(x) && x <= float64(it.enc.limit) {
-			advice = "write it as " + strconv.Itoa(int(x))
-		} else if err == nil {
+		if plain, is := plainly(cell, it.enc.limit); is {
+			advice = "write it as " + plain
+		} else if _, err := strconv.ParseFloat(strings.ReplaceAll(cell, ",", "."), 64); err == nil {
 			advice = "correct the cell, declare it as a code of missing answers, or declare a larger max_score in the items file"
 		}
 		problems.add(valueOutOfRange, t.name, t.row, column, "%s is not a score of item %s (whole numbers 0 to %d); %s",
 			quoted(cell), shown(it.ID), it.enc.limit, advice)
 	}
+}
+
+// overflows reports an item with more choices than can be held.
+func (it *item) overflows(file string, row int, column string, problems *Problems) {
+	problems.add(tooManyChoices, file, row, column,
+		"item %s has more than %d different answers up to this row; declare its options, or its column with --ignore", shown(it.ID), maxChoices)
+}
+
+// plainly returns a number that is whole and lies between 0 and a limit as a score is
+// written; false for any other text.
+func plainly(cell string, limit int) (string, bool) {
+	x, err := strconv.ParseFloat(strings.ReplaceAll(cell, ",", "."), 64)
+	if err != nil || x < 0 || x != math.Trunc(x) || x > float64(limit) {
+		return "", false
+	}
+	return strconv.Itoa(int(x)), true
 }

@@ -57,12 +57,52 @@ func TestUndeclaredBlanksAreCounted(t *testing.T) {
 	}
 	for _, words := range []string{
 		"--empty not_presented", "--empty omitted", "--empty by_position",
-		"column Q1: 3 empty cells of 5 candidates", "column Q2: 2 empty cells of 5 candidates",
-		`comparison 1 (sex): 1 empty cells of reference "m", 3 of focal "f"`,
+		"from this row on, 5 item cells of 2 items are empty",
+		"column Q1: 3 empty cells of 5 candidates; comparison 1: reference 0, focal 2", "column Q2: 2 empty cells of 5 candidates; comparison 1: reference 1, focal 1",
+		`comparison 1 (sex): 1 empty cell of reference "m", 3 of focal "f"`,
 	} {
 		if !strings.Contains(text, words) {
 			t.Errorf("the text lacks %q:\n%s", words, text)
 		}
+	}
+}
+
+// Cells that are not empty are no blanks, whatever their column turns out to be.
+func TestOnlyEmptyCellsAreBlank(t *testing.T) {
+	t.Parallel()
+	for name, in := range map[string]input{
+		"text column":      {responses: "candidate_id,sex,Q1,town\na,m,1,0\nb,f,0,north\nc,m,1,south\nd,f,1,\n"},
+		"choices":          {responses: "candidate_id,sex,Q1\na,m,A\nb,f,B\n"},
+		"unknown form":     {responses: "candidate_id,sex,form,Q1,Q2\na,m,F,1,\nb,f,H,,1\nc,f,G,,0\n", forms: "form,position,item_id\nF,1,Q1\nG,1,Q2\n"},
+		"undecided scores": {responses: "candidate_id,sex,Q1,Q2\na,m,1,A\nb,f,x,\" B\"\nc,m,0,A\n", items: "item_id,key\nQ1,\nQ2,B\n"},
+	} {
+		if p := in.problems(t); p.Count(undeclaredBlanks) != 0 || p.Count(answerOffForm) != 0 || !p.HasErrors() {
+			t.Errorf("%s: got\n%s", name, printed(t, p))
+		}
+	}
+	p := input{responses: "candidate_id,sex,Q1,town\na,m,,0\nb,f,0,north\nc,m,1,south\nd,f,1,\n"}.problems(t)
+	if p.Count(undeclaredBlanks) != 1 || p.Count(undeclaredColumn) != 1 {
+		t.Errorf("got:\n%s", printed(t, p))
+	}
+}
+
+func TestBlanksOfManyItems(t *testing.T) {
+	t.Parallel()
+	header, a, b := "candidate_id,sex", "a,m", "b,f"
+	for i := range 130 {
+		header += fmt.Sprintf(",Q%03d", i)
+		a += ","
+		b += ",1"
+	}
+	p := input{responses: header + "\n" + a + "\n" + b + "\n"}.problems(t)
+	text := printed(t, p)
+	for _, words := range []string{"130 item cells of 130 items are empty", "column Q099: 1 empty cell of 2 candidates; comparison 1: reference 1, focal 0", "30 more items with empty cells"} {
+		if !strings.Contains(text, words) {
+			t.Errorf("the text lacks %q:\n%s", words, text)
+		}
+	}
+	if strings.Contains(text, "Q100") || p.Count(undeclaredBlanks) != 130 {
+		t.Errorf("%d blanks:\n%s", p.Count(undeclaredBlanks), text)
 	}
 }
 
@@ -84,28 +124,6 @@ func TestChoices(t *testing.T) {
 	}
 	if diff := cmp.Diff([]string{"0301", "312i", "2010"}, rows(d)); diff != "" {
 		t.Error(diff)
-	}
-}
-
-// Items without key, options and maximum: whole numbers are scores, anything else makes choices.
-func TestUndecidedItems(t *testing.T) {
-	t.Parallel()
-	result := input{
-		responses: "candidate_id,sex,Q1,Q2\na,m,12,1\nb,f,0,C\nc,m,3,2\n",
-		items:     "item_id\nQ1\nQ2\n",
-	}.good(t)
-	d := result.Data
-	if d.Items[0].MaxScore != 12 || d.Items[0].Options != nil || d.Items[0].KeyMissing {
-		t.Errorf("scores: %+v", d.Items[0])
-	}
-	if !d.Items[1].KeyMissing || !cmp.Equal(d.Items[1].Options, []string{"1", "2", "C"}) {
-		t.Errorf("choices: %+v", d.Items[1])
-	}
-	if got := []byte{d.Answers.Row(0)[0], d.Answers.Row(1)[0], d.Answers.Row(1)[1]}; !cmp.Equal(got, []byte{12, 0, 2}) {
-		t.Errorf("codes %v", got)
-	}
-	if result.Problems.Count(scoreAssumed) != 0 || result.Problems.Count(choiceWithoutKey) != 1 {
-		t.Errorf("problems %v", result.Problems.Kinds)
 	}
 }
 

@@ -63,8 +63,9 @@ func pick[T any](values []T, places []int32) []T {
 func (r *reading) settleAnswers(used []bool, recodings []*recoding) {
 	rec := r.records
 	plans := r.rowPlans()
-	r.lost = r.lost || r.long && r.responses.ragged > 0
-	blanks := &blankCount{reading: r, items: make([]int, len(r.items.items)), groups: make([][2]int, len(r.plan.Comparisons))}
+	r.lost = r.lost || r.long && r.responses.dropped > 0
+	blanks := &blankCount{reading: r, items: make([]int, len(r.items.items))}
+	marks := &presented{on: make([]bool, len(r.items.items))}
 	empty := r.plan.Missing.Empty
 	type slotRecoding struct {
 		slot  int
@@ -83,7 +84,7 @@ func (r *reading) settleAnswers(used []bool, recodings []*recoding) {
 			plan = &plans[rec.form[i]]
 		}
 		if !rec.formless[i] {
-			r.clearOffForm(i, row, plan)
+			r.clearOffForm(i, row, plan, marks)
 		}
 		switch {
 		case r.forms.broken || r.lost || rec.formless[i]: // what is blank cannot be told
@@ -102,5 +103,5 @@ func (r *reading) settleAnswers(used []bool, recodings []*recoding) {
 			row[s.slot] = s.codes[row[s.slot]]
 		}
 	}
-	blanks.report()
+	blanks.report(used)
 }

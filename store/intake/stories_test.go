@@ -97,7 +97,7 @@ func TestStoryUnknownGroupCode(t *testing.T) {
 		t.Errorf("%d not stated, want 738", n)
 	}
 	for _, w := range result.Data.Warnings {
-		if w.Code == emptyLabel && !strings.HasPrefix(w.Message, "738 ") {
+		if w.Code == emptyLabel && !strings.HasPrefix(w.Message, "738 candidates ") {
 			t.Errorf("warning %q", w.Message)
 		}
 	}

@@ -9,6 +9,12 @@ import (
 	"unicode/utf8"
 )
 
+// maxNameBytes bounds identifiers, labels, names and choices, which nameLimit says in words.
+const (
+	maxNameBytes = 1000
+	nameLimit    = "1,000 bytes"
+)
+
 // maxColumns bounds the columns of a file and the items of a request.
 const maxColumns = 10_000
 
@@ -26,12 +32,13 @@ type table struct {
 	blankAt  int            // the first of them
 	unnamed  []int          // columns without a name
 	cut      bool           // rows behind a fault were not read
-	ragged   int            // rows left out for their number of fields
+	dropped  int            // rows left out for their number of fields or a quotation mark
+	complete bool           // the header has the columns it must have
 }
 
 // openTable reads the header. It returns nil without an error where the file has no
 // usable header, which is then among the problems.
-func openTable(f *File, problems *Problems) (*table, error) {
+func openTable(f *File, rule *headerRule, problems *Problems) (*table, error) {
 	text, err := openText(f)
 	if err != nil {
 		return nil, failed(f.Name, 0, err, problems)
@@ -53,29 +60,44 @@ func openTable(f *File, problems *Problems) (*table, error) {
 		err = &fault{tooLarge, fmt.Sprintf("the header has %d columns; %d is the limit", len(header), maxColumns)}
 		return nil, failed(f.Name, 1, err, problems)
 	}
-	if !t.readHeader(header) {
+	if !t.readHeader(header, rule) {
 		return nil, nil
 	}
 	return t, nil
 }
 
 // readHeader takes over the names of the columns and says whether rows can be read.
-func (t *table) readHeader(header []string) bool {
+// Where a required column is missing, the row may be data: its cells are not repeated.
+func (t *table) readHeader(header []string, rule *headerRule) bool {
 	t.row, _ = t.csv.FieldPos(0)
-	for i, name := range header {
-		name = strings.Clone(strings.TrimSpace(name))
-		t.header = append(t.header, name)
+	for _, name := range header {
+		if strings.Contains(strings.TrimSpace(name), "\r") {
+			t.problems.add(badLineEnds, t.name, t.row, "", "lines end in a carriage return alone; save the file with line feeds")
+			return false
+		}
+		t.header = append(t.header, strings.Clone(strings.TrimSpace(name)))
+	}
+	if rule.absent(t.header) {
+		t.problems.add(noHeader, t.name, t.row, "",
+			"the first row holds none of the expected names, or looks like data. The file needs a header line that names its columns, separated by comma, semicolon or tab: %s", rule.advice)
+		return false
+	}
+	t.complete = rule.complete(t.header)
+	for i, name := range t.header {
 		before, twice := t.column[name]
 		switch {
 		case !utf8.ValidString(name):
 			t.problems.add(badEncoding, t.name, t.row, fmt.Sprint(i+1), "the name of the column is not UTF-8; save the file as UTF-8")
-		case strings.Contains(name, "\r"):
-			t.problems.add(badLineEnds, t.name, t.row, "", "lines end in a carriage return alone; save the file with line feeds")
-			return false
+		case len(name) > maxNameBytes:
+			t.problems.add(badValue, t.name, t.row, fmt.Sprint(i+1), "the name of the column is longer than %s; shorten it, and check the quotation marks of the header", nameLimit)
 		case name == "":
 			t.unnamed = append(t.unnamed, i)
 		case twice:
-			t.problems.add(duplicateColumn, t.name, t.row, name,
+			column := name
+			if !t.complete {
+				column = fmt.Sprint(i + 1)
+			}
+			t.problems.add(duplicateColumn, t.name, t.row, column,
 				"columns %d and %d have the same name; rename or remove one", before+1, i+1)
 		default:
 			t.column[name] = i
@@ -129,6 +151,9 @@ func (t *table) next() ([]string, error) {
 		if err == io.EOF {
 			return nil, nil
 		}
+		if t.skips(err) {
+			continue
+		}
 		if err != nil {
 			t.cut = true
 			return nil, failed(t.name, t.row+1, err, t.problems)
@@ -143,9 +168,9 @@ func (t *table) next() ([]string, error) {
 			continue
 		case len(record) != len(t.header):
 			t.rows++
-			t.ragged++
+			t.dropped++
 			t.problems.add(raggedRow, t.name, t.row, "",
-				"the row has %d fields and the header %d; check the delimiters and quotation marks of this row", len(record), len(t.header))
+				"the row has %s and the header %d; check the delimiters and quotation marks of this row", plural(len(record), "field"), len(t.header))
 			continue
 		case t.repeats(record):
 			t.problems.add(repeatedHeader, t.name, t.row, "", "the row repeats the header; remove it, and check that the files put together have the same columns")
@@ -162,6 +187,24 @@ func (t *table) next() ([]string, error) {
 		return record, nil
 	}
 }
+
+// skips reports a quotation mark inside a field that does not start with one. Where
+// the row ends is clear then, so that reading can go on behind it.
+func (t *table) skips(err error) bool {
+	var parse *csv.ParseError
+	if !errors.As(err, &parse) || !errors.Is(parse.Err, csv.ErrBareQuote) {
+		return false
+	}
+	t.row = parse.StartLine
+	t.rows++
+	t.dropped++
+	t.problems.add(badQuoting, t.name, t.row, "",
+		"a quotation mark stands inside a field that does not start with one; put such fields in quotation marks and double those inside. This row was not read")
+	return true
+}
+
+// gaps reports whether some rows were not read.
+func (t *table) gaps() bool { return t.cut || t.dropped > 0 }
 
 func blank(record []string) bool {
 	for _, cell := range record {
@@ -195,12 +238,12 @@ func failed(name string, row int, err error, problems *Problems) error {
 		problems.add(broken.kind, name, row, "", "%s", broken.message)
 		return nil
 	case errors.As(err, &parse):
-		what := "a quotation mark stands inside a field that does not start with one"
+		what, so := "a quotation mark stands inside a field that does not start with one", "Without its header the file was not read"
 		if errors.Is(parse.Err, csv.ErrQuote) {
-			what = "a quoted field does not end where it should"
+			what, so = "a quoted field does not end where it should", "Where the row ends is not clear, so that this row and those after it were not read"
 		}
 		problems.add(badQuoting, name, parse.StartLine, "",
-			"%s; put such fields in quotation marks and double those inside. Rows after this one were not read", what)
+			"%s; put such fields in quotation marks and double those inside. %s", what, so)
 		return nil
 	}
 	return fmt.Errorf("read %s: %w", name, err)

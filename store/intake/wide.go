@@ -77,7 +77,9 @@ func (w *wide) row(record []string) {
 	rec.rows = append(rec.rows, int32(t.row))
 	form, formKnown := 0, true
 	if w.at.form >= 0 {
-		form, formKnown = w.forms.read(record[w.at.form], t, w.problems)
+		if form, formKnown = w.forms.read(record[w.at.form], t, w.problems); !formKnown {
+			rec.formless[len(rec.rows)-1] = true
+		}
 	}
 	if rec.form != nil {
 		rec.form = append(rec.form, uint16(form))
@@ -110,7 +112,7 @@ func (w *wide) row(record []string) {
 		} else if len(cell) == 0 {
 			continue // the template says what it is
 		}
-		code, why := c.item.enc.code(cell)
+		code, why := c.item.enc.code(cell, t.row)
 		row[c.slot] = code
 		if why == accepted {
 			continue
@@ -142,7 +144,7 @@ func (w *wide) versions(record []string, form int, row []byte) {
 			w.offForm(strings.TrimSpace(cell), c.id)
 			continue
 		}
-		code, why := entry.item.enc.code(cell)
+		code, why := entry.item.enc.code(cell, w.responses.row)
 		row[entry.item.index] = code
 		if why != accepted {
 			refused(why, entry.item, cell, c.id, w.responses, w.problems)
@@ -229,7 +231,7 @@ func (w *wide) itemsByColumn(order []string) {
 		}
 	}
 	for _, it := range w.items.items {
-		if !slices.Contains(order, it.ID) {
+		if !slices.Contains(c.byID[it.ID], it) {
 			c.add(it)
 		}
 	}
