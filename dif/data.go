@@ -267,14 +267,14 @@ const noScore = 0xFF
 
 // scoreTables returns the score of each code per form and item: tables[form][item],
 // with a single entry where no form is known.
-func (d *Data) scoreTables() [][]scoreTable {
-	forms := max(1, len(d.Forms))
-	tables := make([][]scoreTable, forms)
+func (d *Data) scoreTables() [][]*scoreTable {
+	common := make([]*scoreTable, len(d.Items))
+	for i := range d.Items {
+		common[i] = d.Items[i].scores(d.Items[i].Key)
+	}
+	tables := make([][]*scoreTable, max(1, len(d.Forms)))
 	for f := range tables {
-		tables[f] = make([]scoreTable, len(d.Items))
-		for i := range d.Items {
-			tables[f][i] = d.Items[i].scores(d.Items[i].Key)
-		}
+		tables[f] = slices.Clone(common)
 		if f < len(d.Forms) {
 			for _, fi := range d.Forms[f].Items {
 				if fi.Key != nil {
@@ -287,8 +287,8 @@ func (d *Data) scoreTables() [][]scoreTable {
 }
 
 // scores returns the score of every code under the given key.
-func (it *Item) scores(key []string) scoreTable {
-	var t scoreTable
+func (it *Item) scores(key []string) *scoreTable {
+	t := new(scoreTable)
 	for c := range t {
 		t[c] = noScore
 	}

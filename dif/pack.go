@@ -17,7 +17,7 @@ type packed struct {
 	set    []int32  // per candidate, the presented set
 	sets   []presented
 	pooled int // candidates presented less than others of their set, where sets are not kept apart
-	scores [][]scoreTable
+	scores [][]*scoreTable
 	data   *Data
 }
 
@@ -105,7 +105,7 @@ func (p *packed) packRow(c int) (gap, partial bool) {
 		switch {
 		case s == noScore:
 			gap = gap || width > 0
-			partial = partial || !shown(&tables[i], code, width > 0)
+			partial = partial || !shown(tables[i], code, width > 0)
 		case width == 1:
 			row[first/64] |= uint64(s&1) << (first % 64)
 		default:
@@ -148,7 +148,7 @@ func (p *packed) assignSets(partial []bool, by setting) {
 		tables := p.scores[p.form(c)]
 		items := make([]bool, len(d.Items))
 		for i, code := range d.Answers.Row(c) {
-			if tables[i][code] != noScore || shown(&tables[i], code, p.first[i+1] > p.first[i]) {
+			if tables[i][code] != noScore || shown(tables[i], code, p.first[i+1] > p.first[i]) {
 				items[i] = true
 				key[i/8] |= 1 << (i % 8)
 			}
@@ -181,7 +181,7 @@ func (p *packed) assignForms(partial []bool, apart bool) {
 	each := func(c int, of func(item int, shown bool)) {
 		tables := p.scores[p.form(c)]
 		for i, code := range d.Answers.Row(c) {
-			of(i, tables[i][code] != noScore || shown(&tables[i], code, p.first[i+1] > p.first[i]))
+			of(i, tables[i][code] != noScore || shown(tables[i], code, p.first[i+1] > p.first[i]))
 		}
 	}
 	whole := make([]bool, len(p.sets)) // somebody was presented everything
