@@ -73,8 +73,7 @@ func shortenRunes(s string, most int) string {
 }
 
 func (r *report) write(first *document) *document {
-	foot := r.title() + "  ·  evidence " + shortDigest(r.options.EvidenceSHA256)
-	r.document = newDocument(r.title(), foot, r.options.Date, first)
+	r.document = newDocument(r.title(), "evidence "+shortDigest(r.options.EvidenceSHA256), r.options.Date, first)
 	if first != nil {
 		r.altered = len(first.text.altered)
 	}

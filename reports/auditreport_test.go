@@ -161,38 +161,28 @@ func TestReportNeedsEvidenceAndDate(t *testing.T) {
 	}
 }
 
-// Pictures of flagged items are limited: C before B, larger differences first.
-func TestMostFlaggedItemsArePictured(t *testing.T) {
+// Every flagged item is pictured, provisional letters included, in item order.
+func TestEveryFlaggedItemIsPictured(t *testing.T) {
 	t.Parallel()
 	var c exposedComparison
-	for i := range 60 {
-		letter := "B-"
-		if i%3 == 0 {
-			letter = "C+"
-		}
+	for i := range 180 {
+		letter := []string{"A", "B-", "C+"}[i%3]
 		f := exposedFinding{number: i + 1}
-		f.Classification.Class = &letter
-		f.Results = dif.Results{{Method: "mantel_haenszel", Result: &dif.MantelHaenszelResult{Delta: ptr(1 + float64(i)/60)}}}
+		if i%2 == 0 {
+			f.Classification.Class = &letter
+		} else {
+			f.Classification.ComputedClass = &letter
+		}
 		c.findings = append(c.findings, f)
 	}
-	got, left := c.flaggedItems()
-	if len(got) != mostPictures || left != 20 {
-		t.Fatalf("%d pictured, %d left out", len(got), left)
+	got := c.flaggedItems()
+	if len(got) != 120 {
+		t.Fatalf("%d pictured, want 120", len(got))
 	}
-	large, last := 0, 0
-	for _, f := range got {
-		if letter, _ := f.class(); severity(letter) == 'C' {
-			large++
-		} else if f.number < 31 { // the 20 largest of the 40 B are the items from 31 on
-			t.Errorf("item %d is pictured before larger ones", f.number)
-		}
-		if f.number <= last {
+	for i, f := range got[1:] {
+		if f.number <= got[i].number {
 			t.Error("pictures are out of item order")
 		}
-		last = f.number
-	}
-	if large != 20 {
-		t.Errorf("%d of 20 items lettered C are pictured", large)
 	}
 }
 

@@ -23,8 +23,12 @@ func cautions(x *exposed) []caution {
 	}
 	chance := "No test could be made, so none can mislead by chance."
 	if tests > 0 {
-		chance = fmt.Sprintf("%s were made. If no item worked differently at all, %s would still have p below %s, and %s would still be lettered B or C.",
-			plural(tests, "test", "tests"), about(significant), shortest(&c.ClassAlpha), about(letters))
+		were := "were"
+		if tests == 1 {
+			were = "was"
+		}
+		chance = fmt.Sprintf("%s %s made. If no item worked differently at all, %s would still have p below %s, and %s would still be lettered B or C.",
+			plural(tests, "test", "tests"), were, about(significant), shortest(&c.ClassAlpha), about(letters))
 	}
 	return []caution{
 		{"A signal, not a judgement", "A letter tells how far an item's statistics stand from no difference. Whether the item, the test or anybody's work is at fault is a question " +

@@ -106,7 +106,11 @@ func (s scale) ticks(n int) []float64 {
 	}
 	var out []float64
 	for i := math.Ceil(s.low/step - 1e-9); i*step <= s.high+1e-9*span && len(out) < 50; i++ {
-		out = append(out, i*step)
+		v := i * step
+		if step < 1 {
+			v = i / math.Round(1/step) // the nearest number to a short decimal
+		}
+		out = append(out, v)
 	}
 	return out
 }

@@ -1,15 +1,11 @@
 package reports
 
 import (
-	"cmp"
 	"fmt"
 	"slices"
 
 	"difaudit/dif"
 )
-
-// mostPictures is how many flagged items of a comparison are pictured.
-const mostPictures = 40
 
 // comparisonSection reports one comparison: counts, what to know before reading, the
 // interval plot, the table of items, the pictures, and what could not be tested.
@@ -34,6 +30,9 @@ func (r *report) matchingPart(c *exposedComparison) {
 	if a := c.Matching.Reliability; a != nil {
 		text += " Its reliability (coefficient alpha) is " + fixed(a, 2) + "."
 	}
+	if s := c.Matching.ScoreCorrelation; s != nil {
+		text += " It correlates " + fixed(s, 2) + " with the total of the scored items."
+	}
 	removed := len(c.Matching.RemovedItems) + c.removedUnnamed
 	switch {
 	case c.withheld:
@@ -42,7 +41,11 @@ func (r *report) matchingPart(c *exposedComparison) {
 	case removed == 0:
 		text += " The first pass removed no item from it."
 	default:
-		text += fmt.Sprintf(" The first pass removed %s from it, each still counting in its own test", plural(removed, "item", "items"))
+		still := "which still counts in its own test"
+		if removed > 1 {
+			still = "each still counting in its own test"
+		}
+		text += fmt.Sprintf(" The first pass removed %s from it, %s", plural(removed, "item", "items"), still)
 		if len(c.Matching.RemovedItems) > 0 {
 			text += ": " + list(c.Matching.RemovedItems, 60)
 		}
@@ -52,7 +55,11 @@ func (r *report) matchingPart(c *exposedComparison) {
 		text += "."
 	}
 	if d := medianDetectable(c); d != nil {
-		text += fmt.Sprintf(" Half of the items would show a true D-DIF of %s or more with 80 %% power; smaller ones are usually missed.", fixed(d, 2))
+		who := "Half of the items"
+		if len(c.findings) == 1 {
+			who = "The item"
+		}
+		text += fmt.Sprintf(" %s would show a true D-DIF of %s or more with 80 %% power; smaller ones are usually missed.", who, fixed(d, 2))
 	}
 	r.paragraph(text, body)
 	r.setsPart(c.sets)
@@ -82,7 +89,7 @@ func (r *report) setsPart(sets []exposedSet) {
 		r.paragraph(fmt.Sprintf("%s with fewer than 10 candidates of a group, or withheld to protect one, not listed.", plural(small, "further set", "further sets")), caption)
 	}
 	if more > 0 {
-		r.paragraph(fmt.Sprintf("%s more stand in the evidence.", plural(more, "set", "sets")), caption)
+		r.paragraph(fmt.Sprintf("The evidence holds %s more.", plural(more, "set", "sets")), caption)
 	}
 }
 
@@ -162,6 +169,7 @@ func (c *exposedComparison) listItems(items []string, most int) string {
 func (r *report) untestedPart(c *exposedComparison) {
 	type group struct {
 		reason, detail string
+		withheld       bool
 		items          []string
 	}
 	var groups []group
@@ -171,10 +179,10 @@ func (r *report) untestedPart(c *exposedComparison) {
 			continue
 		}
 		reason, detail := value(f.Classification.Reason), detailText(f.Classification.Detail)
-		k := slices.IndexFunc(groups, func(g group) bool { return g.reason == reason && g.detail == detail })
+		k := slices.IndexFunc(groups, func(g group) bool { return g.reason == reason && g.detail == detail && g.withheld == f.withheld })
 		if k < 0 {
 			k = len(groups)
-			groups = append(groups, group{reason: reason, detail: detail})
+			groups = append(groups, group{reason: reason, detail: detail, withheld: f.withheld})
 		}
 		groups[k].items = append(groups[k].items, f.name())
 	}
@@ -185,11 +193,13 @@ func (r *report) untestedPart(c *exposedComparison) {
 	var rows [][]tableCell
 	for _, g := range groups {
 		words := reasonSentence(g.reason, r.x.plan.Criteria)
-		if c.withheld && g.reason == dif.ReasonTooFewCandidates {
-			words += " Here they are withheld, to protect candidates."
-		}
-		if g.reason == "" {
+		switch {
+		case g.reason == "":
 			words = "The evidence names no reason."
+		case g.withheld && g.reason != dif.ReasonWithheldForPrivacy:
+			words += " Results are withheld, to protect candidates."
+		case g.reason == dif.ReasonTooFewCandidates:
+			words += " Statistics are given so that evidence can build up; a letter in parentheses is provisional."
 		}
 		if g.detail != "" {
 			words += " Cause: " + g.detail + "."
@@ -223,28 +233,14 @@ func (r *report) intervalPart(c *exposedComparison) {
 	r.intervalPlot(rows)
 }
 
-// flaggedItems returns the flagged findings in the order in which they are pictured
-// when there is not room for all: C before B, larger differences first; those left
-// out are counted. What is returned stands in item order.
-func (c *exposedComparison) flaggedItems() (flagged []*exposedFinding, left int) {
+// flaggedItems returns the findings with letter B or C, provisional ones included, in
+// item order. Every one of them is pictured.
+func (c *exposedComparison) flaggedItems() []*exposedFinding {
+	var flagged []*exposedFinding
 	for i := range c.findings {
 		if c.findings[i].flagged() {
 			flagged = append(flagged, &c.findings[i])
 		}
 	}
-	if len(flagged) <= mostPictures {
-		return flagged, 0
-	}
-	slices.SortStableFunc(flagged, func(a, b *exposedFinding) int {
-		la, _ := a.class()
-		lb, _ := b.class()
-		if d := cmp.Compare(severity(lb), severity(la)); d != 0 {
-			return d
-		}
-		return cmp.Compare(b.size(), a.size())
-	})
-	left = len(flagged) - mostPictures
-	flagged = flagged[:mostPictures]
-	slices.SortStableFunc(flagged, func(a, b *exposedFinding) int { return cmp.Compare(a.number, b.number) })
-	return flagged, left
+	return flagged
 }

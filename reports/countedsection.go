@@ -2,6 +2,8 @@ package reports
 
 import (
 	"fmt"
+	"slices"
+	"strings"
 
 	"difaudit/dif"
 )
@@ -32,8 +34,9 @@ func (r *report) countedSection() {
 	r.splitTables()
 
 	r.heading("Groups", 25)
+	r.labelTable()
 	r.groupTable()
-	if len(r.x.comparisons) > mostStrips {
+	if len(r.x.comparisons) > mostFrontRows {
 		r.heading("All comparisons at a glance", 25)
 		r.outcomeTable(len(r.x.comparisons))
 	}
@@ -57,7 +60,7 @@ func (r *report) contents() {
 	for i, t := range titles {
 		if len(titles) > most && i >= most-2 && i < len(titles)-1 {
 			if i == most-2 {
-				r.contentsLine(fmt.Sprintf("... and %s more comparisons", whole(len(titles)-1-i)), 0)
+				r.contentsLine("... and "+plural(len(titles)-1-i, "more comparison", "more comparisons"), 0)
 			}
 			continue
 		}
@@ -103,6 +106,44 @@ func (r *report) splitTables() {
 	}
 }
 
+// labelTable shows how the candidates analysed fall on the labels of every grouping.
+func (r *report) labelTable() {
+	columns := []tableColumn{{"Grouping", 40, alignLeft}, {head: "Label"}, {"In the comparisons", 44, alignLeft}, {"Candidates", 26, alignRight}}
+	var rows [][]tableCell
+	for _, g := range r.x.groupings {
+		name := g.name
+		add := func(label, part, n string) {
+			rows = append(rows, cells(name, label, part, n))
+			name = ""
+		}
+		for i, label := range g.labels {
+			add(label, r.partOf(g.name, label), g.counts[i].String())
+		}
+		if len(g.others) > 0 || g.other != (count{}) {
+			add("other labels, not compared", "", g.other.String())
+		}
+		add("not stated", "", g.notStated.String())
+		add("all analysed", "", whole(r.x.inputs.CandidatesAnalysed))
+		total := rows[len(rows)-1]
+		total[1].bold, total[3].bold = true, true
+	}
+	r.table(columns, rows, 7.5)
+}
+
+// partOf says in which part a label stands in the comparisons of its grouping.
+func (r *report) partOf(grouping, label string) string {
+	var parts []string
+	for i := range r.x.comparisons {
+		c := &r.x.comparisons[i]
+		for _, p := range []struct{ label, part string }{{c.Reference, "reference"}, {c.Focal, "focal"}} {
+			if c.Grouping == grouping && p.label == label && !slices.Contains(parts, p.part) {
+				parts = append(parts, p.part)
+			}
+		}
+	}
+	return strings.Join(parts, " and ")
+}
+
 // groupTable describes the two groups of every comparison.
 func (r *report) groupTable() {
 	columns := []tableColumn{
@@ -118,12 +159,9 @@ func (r *report) groupTable() {
 				fixed(g.Reference.Mean, 2), fixed(g.Reference.SD, 2), "", fixed(c.Matching.Reliability, 2)),
 			cells("", c.Focal+" (focal)", c.nFocal.String(), c.unmatchedFocal.String(), fixed(g.Focal.Mean, 2), fixed(g.Focal.SD, 2), fixed(g.Difference, 2), ""),
 		)
-		if last := i+1 == len(r.x.comparisons); last || r.x.comparisons[i+1].Grouping != c.Grouping {
-			rows = append(rows, cells("", "not stated", c.notStated.String(), "", "", "", "", ""))
-		}
 	}
 	r.table(columns, rows, 7.5)
-	r.paragraph("Candidates have a label and a matching score. Without a match: at a score that nobody of the other group reached. Mean, SD and reliability "+
+	r.paragraph("Candidates have a label and a matching score. Without a match: at a score that nobody of the other group reached; withheld where that would tell of fewer than 10 candidates. Mean, SD and reliability "+
 		"(coefficient alpha, both groups together) are of the matching score before items are removed from it. The difference is the focal mean less the reference mean, in pooled SD; it is not DIF.", caption)
 }
 

@@ -14,9 +14,9 @@ import (
 // WriteCSV writes the findings, a row for every item of every comparison: UTF-8,
 // commas, line feeds. The columns depend on the methods of the plan alone; values that
 // do not exist are empty, numbers are in shortest round-trip form. Counts below ten
-// are written "<10", a count that would give one away "withheld", and the results that
-// rest on them are left empty. Text that a
-// spreadsheet would take for a formula begins with an apostrophe.
+// are written "<10", a count that would give one away "withheld". The results of an item
+// with fewer than ten candidates of a group, or one to nine matched ones, are left empty.
+// Text that a spreadsheet would take for a formula begins with an apostrophe.
 func WriteCSV(w io.Writer, e *dif.Evidence) error {
 	if e == nil {
 		return errors.New("write findings: there is no evidence")

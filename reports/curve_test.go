@@ -83,3 +83,15 @@ func TestSpreadKeepsOrderAndDistance(t *testing.T) {
 		}
 	}
 }
+
+// Labels of an axis are short decimals, also where steps of a tenth add up badly.
+func TestTicksAreShortNumbers(t *testing.T) {
+	t.Parallel()
+	for _, s := range []scale{{12.45, 13.35, 0, 1}, {0.1, 0.7, 0, 1}, {0, 1, 0, 1}, {-3, 250, 0, 1}, {1.001, 1.009, 0, 1}} {
+		for _, v := range s.ticks(10) {
+			if text := shortest(&v); len(text) > 5 || v < s.low-1e-9 || v > s.high+1e-9 {
+				t.Errorf("tick %s between %v and %v", text, s.low, s.high)
+			}
+		}
+	}
+}

@@ -143,3 +143,18 @@ func numbered(prefix string, n int) []string {
 	}
 	return items
 }
+
+// external audits planted levels: three external scores, 40 items of which one is much
+// harder and one much easier for the focal group, and one nobody of which group m got wrong.
+func external(t testing.TB) *dif.Evidence {
+	d := invented{numbered("P", 40), "sex", map[string]int{"f": 700, "m": 350}, map[int]float64{5: 1.2, 30: -1.2}, 0.2}.draw(17)
+	for c := range d.Received {
+		d.External = append(d.External, float64(c%3))
+		if c >= 700 {
+			d.Answers.Row(c)[7] = 1
+		}
+	}
+	p := planFor("sex", "f", "m")
+	p.Matching.Variable = dif.MatchExternal
+	return audit(t, p, d)
+}

@@ -7,22 +7,17 @@ import (
 )
 
 // exposed is evidence as it may be exported: counts of fewer than ten candidates of a
-// group are hidden, and so is every statistic that rests on them. Every output of the
-// package is made from it and never from the evidence itself.
+// group are hidden, and so is every statistic that rests on them and every number they
+// could be computed from. Every output of the package is made from it and never from
+// the evidence itself.
 type exposed struct {
 	engine      dif.Engine
-	inputs      dif.Inputs // Exclusions split by a grouping are left out; see splits
+	inputs      dif.Inputs // without the counts by label; see splits and groupings
 	plan        dif.Plan
 	splits      []split
+	groupings   []exposedGrouping
 	comparisons []exposedComparison
-}
-
-// split shows how the exclusions of one grouping fall on its labels.
-type split struct {
-	grouping string
-	labels   []string // "" is not stated
-	reasons  []string
-	counts   [][]count // by reason, then label
+	lost        []string // sentences on candidates lost, to be read before any result
 }
 
 // exposedComparison is a comparison as it may be exported. The embedded value holds
@@ -30,13 +25,15 @@ type split struct {
 type exposedComparison struct {
 	dif.Comparison
 	withheld           bool // a group has fewer than ten candidates: no statistic is shown
+	sharesHidden       bool // what part of the candidates was lost would tell a hidden count
 	nReference, nFocal count
 	notStated          count
-	unmatchedRef       count
-	unmatchedFocal     count
-	sets               []exposedSet
-	removedUnnamed     int // items out of the matching score that are themselves withheld
-	findings           []exposedFinding
+	// Candidates without a counterpart. They are told where the comparison is shown and
+	// ten candidates or more of each group, or none, have one.
+	unmatchedRef, unmatchedFocal count
+	sets                         []exposedSet
+	removedUnnamed               int // items out of the matching score that are themselves withheld
+	findings                     []exposedFinding
 }
 
 // exposedSet is a presented set with the sizes of its groups.
@@ -45,160 +42,102 @@ type exposedSet struct {
 	reference, focal count
 }
 
-// exposedFinding is a finding as it may be exported. The embedded value holds no
-// numbers where they are withheld.
-type exposedFinding struct {
-	dif.Finding
-	number                           int // place of the item in the audit, from 1
-	role                             string
-	maxScore                         int
-	withheld                         bool // a group has fewer than ten candidates on the item
-	nReference, nFocal               count
-	nMatchedReference, nMatchedFocal count
-}
-
 // expose applies the rules of exposure to evidence, which is not changed.
 func expose(e *dif.Evidence) *exposed {
 	x := &exposed{engine: e.Engine, inputs: e.Inputs, plan: e.Plan}
-	x.inputs.Exclusions = nil
+	x.inputs.Exclusions, x.inputs.Groupings = nil, nil
 	for _, ex := range e.Inputs.Exclusions {
 		if ex.Grouping == nil {
 			x.inputs.Exclusions = append(x.inputs.Exclusions, ex)
 		}
 	}
-	x.splits = splitExclusions(e.Inputs.Exclusions)
-	sizes := exposeGroups(e.Comparisons)
+	x.splits = splitExclusions(e.Inputs)
+	x.groupings = exposeGroups(e)
 	for i := range e.Comparisons {
-		x.comparisons = append(x.comparisons, exposeComparison(e, &e.Comparisons[i], sizes))
+		x.comparisons = append(x.comparisons, x.comparison(e, &e.Comparisons[i]))
 	}
+	x.lost = x.lostSentences(e)
 	return x
 }
 
-// splitExclusions gathers the exclusions split by label, each split guarded.
-func splitExclusions(all []dif.Exclusion) []split {
-	var out []split
-	for _, ex := range all {
-		if ex.Grouping == nil {
-			continue
-		}
-		i := slices.IndexFunc(out, func(s split) bool { return s.grouping == *ex.Grouping })
-		if i < 0 {
-			i = len(out)
-			out = append(out, split{grouping: *ex.Grouping})
-		}
-		s := &out[i]
-		if label := labelOf(ex); !slices.Contains(s.labels, label) {
-			s.labels = append(s.labels, label)
-		}
-		if !slices.Contains(s.reasons, ex.Reason) {
-			s.reasons = append(s.reasons, ex.Reason)
-		}
-	}
-	for i := range out {
-		s := &out[i]
-		slices.Sort(s.labels)
-		if s.labels[0] == "" { // not stated stands last
-			s.labels = append(s.labels[1:], "")
-		}
-		for _, reason := range s.reasons {
-			cells := make([]int, len(s.labels))
-			for _, ex := range all {
-				if ex.Grouping != nil && *ex.Grouping == s.grouping && ex.Reason == reason {
-					cells[slices.Index(s.labels, labelOf(ex))] += ex.Count
-				}
-			}
-			s.counts = append(s.counts, guardedSplit(cells, slices.Index(s.labels, "")))
-		}
-	}
-	return out
+func (x *exposed) grouping(name string) *exposedGrouping {
+	return &x.groupings[slices.IndexFunc(x.groupings, func(g exposedGrouping) bool { return g.name == name })]
 }
 
-func labelOf(ex dif.Exclusion) string {
-	if ex.Label == nil {
-		return ""
-	}
-	return *ex.Label
-}
-
-// groupSizes holds what may be shown of the sizes of the groups of a grouping.
-type groupSizes struct {
-	labels    map[string]count
-	notStated count
-}
-
-// exposeGroups guards the groups of each grouping together with its candidates without
-// a label: they add up to the candidates analysed, which is shown.
-func exposeGroups(comparisons []dif.Comparison) map[string]groupSizes {
-	out := map[string]groupSizes{}
-	for _, c := range comparisons {
-		if _, done := out[c.Grouping]; done {
-			continue
-		}
-		var labels []string
-		cells := []int{c.Groups.NotStated}
-		for _, other := range comparisons {
-			if other.Grouping != c.Grouping {
-				continue
-			}
-			for _, g := range []struct {
-				label string
-				n     int
-			}{{other.Reference, other.Groups.Reference.N}, {other.Focal, other.Groups.Focal.N}} {
-				if !slices.Contains(labels, g.label) {
-					labels = append(labels, g.label)
-					cells = append(cells, g.n)
-				}
-			}
-		}
-		guardedCells := guardedSplit(cells, 0)
-		sizes := groupSizes{map[string]count{}, guardedCells[0]}
-		for i, label := range labels {
-			sizes.labels[label] = guardedCells[i+1]
-		}
-		out[c.Grouping] = sizes
-	}
-	return out
-}
-
-func exposeComparison(e *dif.Evidence, c *dif.Comparison, sizes map[string]groupSizes) exposedComparison {
-	size := sizes[c.Grouping]
-	x := exposedComparison{
+// comparison exposes one comparison of the evidence.
+func (x *exposed) comparison(e *dif.Evidence, c *dif.Comparison) exposedComparison {
+	g := x.grouping(c.Grouping)
+	out := exposedComparison{
 		Comparison: *c,
 		withheld:   c.Groups.Reference.N < smallest || c.Groups.Focal.N < smallest,
-		nReference: size.labels[c.Reference], nFocal: size.labels[c.Focal], notStated: size.notStated,
-		unmatchedRef: guarded(c.Groups.Reference.Unmatched), unmatchedFocal: guarded(c.Groups.Focal.Unmatched),
+		nReference: g.of(c.Reference), nFocal: g.of(c.Focal), notStated: g.notStated,
 	}
-	x.Items, x.Matching.Stages, x.Matching.Sets = nil, nil, nil
-	x.Groups.Reference.N, x.Groups.Focal.N, x.Groups.NotStated = 0, 0, 0
-	x.Groups.Reference.Unmatched, x.Groups.Focal.Unmatched = 0, 0
-	if x.withheld {
-		x.Groups, x.Matching.Reliability = dif.Groups{}, nil
-		x.unmatchedRef, x.unmatchedFocal = count{hiding: complement}, count{hiding: complement}
-		x.Warnings = withoutMessages(c.Warnings)
-	} else if x.nReference.hiding == visible && x.nFocal.hiding == visible {
-		x.sets = exposeSets(c.Matching.Sets)
-	}
-	x.Summary.Classes = slices.Clone(c.Summary.Classes)
-	x.Summary.NoVerdict = slices.Clone(c.Summary.NoVerdict)
+	out.Items, out.Matching.Stages, out.Matching.Sets = nil, nil, nil
+	out.sharesHidden = out.withheld || x.hidesLost(e, c, out.nReference, out.nFocal)
+	out.exposeSizes(c)
+	out.Summary.Classes = slices.Clone(c.Summary.Classes)
+	out.Summary.NoVerdict = slices.Clone(c.Summary.NoVerdict)
+	lettered := out.Summary.Classes.Total()
 	withheldItems := map[string]bool{}
 	for i := range c.Items {
-		f := exposeFinding(e, i, &c.Items[i], x.withheld)
-		if f.withheld {
-			withheldItems[f.Item] = true
-		}
-		f.guardByGroup(x.nReference, x.nFocal)
-		x.adjustSummary(&c.Items[i], &f)
-		x.findings = append(x.findings, f)
+		f := exposeFinding(e, i, &c.Items[i], out.withheld)
+		withheldItems[f.Item] = withheldItems[f.Item] || f.withheld
+		f.hideGroups(out.nReference.hiding == complement, out.nFocal.hiding == complement)
+		out.adjustSummary(&c.Items[i], &f, e.Plan.Criteria)
+		out.findings = append(out.findings, f)
 	}
-	x.Matching.RemovedItems = nil
+	if n := out.Summary.Classes.Total(); n < lettered {
+		// What chance gives is known for all letters together only.
+		share := float64(n) / float64(lettered)
+		out.Summary.ExpectedByChance.BOrC *= share
+		out.Summary.ExpectedByChance.C *= share
+	}
+	out.coverItemCounts(c)
+	out.Matching.RemovedItems = nil
 	for _, item := range c.Matching.RemovedItems {
 		if withheldItems[item] {
-			x.removedUnnamed++
+			out.removedUnnamed++
 		} else {
-			x.Matching.RemovedItems = append(x.Matching.RemovedItems, item)
+			out.Matching.RemovedItems = append(out.Matching.RemovedItems, item)
 		}
 	}
-	return x
+	return out
+}
+
+// exposeSizes decides what is shown of the two groups as wholes: their means, how many
+// have no counterpart, and the presented sets.
+func (x *exposedComparison) exposeSizes(c *dif.Comparison) {
+	x.unmatchedRef, x.unmatchedFocal = count{n: c.Groups.Reference.Unmatched}, count{n: c.Groups.Focal.Unmatched}
+	x.Groups.NotStated = 0
+	for _, g := range []*dif.Group{&x.Groups.Reference, &x.Groups.Focal} {
+		g.N, g.Unmatched, g.NoScore = 0, 0, 0
+	}
+	if x.sharesHidden {
+		x.unmatchedRef, x.unmatchedFocal = count{hiding: complement}, count{hiding: complement}
+	}
+	if x.notStated.hiding != visible || x.nReference.hiding == complement || x.nFocal.hiding == complement {
+		// That more gave no label than a group holds bounds two hidden counts.
+		x.Warnings = slices.DeleteFunc(slices.Clone(x.Warnings), func(w dif.Warning) bool { return w.Code == dif.WarnNotStated })
+	}
+	switch {
+	case x.withheld:
+		x.Groups, x.Matching.Reliability, x.Matching.ScoreCorrelation = dif.Groups{}, nil, nil
+		x.Warnings = withoutMessages(x.Warnings, func(string) bool { return true })
+		return
+	case x.sharesHidden:
+		x.Warnings = withoutMessages(x.Warnings, func(code string) bool {
+			return code == dif.WarnCandidatesLost || code == dif.WarnFocalLost
+		})
+	}
+	if x.nReference.hiding == complement {
+		x.Groups.Reference.Mean, x.Groups.Reference.SD = nil, nil
+	}
+	if x.nFocal.hiding == complement {
+		x.Groups.Focal.Mean, x.Groups.Focal.SD = nil, nil
+	}
+	if x.nReference.hiding == visible && x.nFocal.hiding == visible {
+		x.sets = exposeSets(c.Matching.Sets)
+	}
 }
 
 func exposeSets(sets []dif.PresentedSet) []exposedSet {
@@ -215,50 +154,56 @@ func exposeSets(sets []dif.PresentedSet) []exposedSet {
 	return out
 }
 
-// exposeFinding returns the finding without its numbers where a group has fewer than
-// ten candidates. The reason for no verdict stays when there is one.
-func exposeFinding(e *dif.Evidence, i int, f *dif.Finding, all bool) exposedFinding {
-	x := exposedFinding{
-		Finding: *f, number: i + 1, role: dif.RoleOperational, maxScore: 1,
-		nReference: guarded(f.NReference), nFocal: guarded(f.NFocal),
-		nMatchedReference: guarded(f.NMatchedReference), nMatchedFocal: guarded(f.NMatchedFocal),
-	}
-	at := slices.IndexFunc(e.Inputs.Items, func(s dif.ItemSummary) bool { return s.Item == f.Item && s.Version == f.Version })
-	if at >= 0 {
-		x.number, x.role, x.maxScore = at+1, e.Inputs.Items[at].Role, e.Inputs.Items[at].MaxScore
-	}
-	x.withheld = all || f.NReference < smallest || f.NFocal < smallest
-	if x.withheld {
-		x.Finding = dif.Finding{
-			FindingCounts:  dif.FindingCounts{Item: f.Item, Version: f.Version},
-			Classification: dif.Classification{Reason: f.Classification.Reason, Detail: f.Classification.Detail},
+// coverItemCounts hides counts of items from which the hidden count of another item or of
+// a form could be found. The counts of items are sums over presented sets. Where fewer
+// than ten of a group took an item, the items with the next smallest count are hidden with
+// it; where a named form has so few, every item that not all of the group took.
+func (x *exposedComparison) coverItemCounts(c *dif.Comparison) {
+	for _, group := range []struct {
+		size   int
+		of     func(f *exposedFinding) count
+		ofSet  func(s exposedSet) count
+		hidden [2]bool
+	}{
+		{c.Groups.Reference.N, func(f *exposedFinding) count { return f.nReference }, func(s exposedSet) count { return s.reference }, [2]bool{true, false}},
+		{c.Groups.Focal.N, func(f *exposedFinding) count { return f.nFocal }, func(s exposedSet) count { return s.focal }, [2]bool{false, true}},
+	} {
+		limit := 0
+		for i := range x.findings {
+			if group.of(&x.findings[i]).hiding == few {
+				limit = group.size
+			}
 		}
-		if f.Classification.Reason == nil {
-			reason := dif.ReasonWithheldForPrivacy
-			x.Classification.Reason = &reason
+		for i := range x.findings {
+			if n := group.of(&x.findings[i]); n.hiding == visible && n.n > 0 {
+				limit = min(limit, n.n+1)
+			}
+		}
+		for _, s := range x.sets {
+			if s.Form != nil && group.ofSet(s).hiding == few {
+				limit = group.size
+			}
+		}
+		for i := range x.findings {
+			if n := group.of(&x.findings[i]); n.hiding == visible && n.n > 0 && n.n < limit {
+				x.findings[i].hideGroups(group.hidden[0], group.hidden[1])
+			}
 		}
 	}
-	x.NReference, x.NFocal, x.NMatchedReference, x.NMatchedFocal = 0, 0, 0, 0
-	return x
 }
 
-// guardByGroup hides counts of a group whose size is itself hidden to protect another,
-// and its proportions correct, whose digits give the count away.
-func (f *exposedFinding) guardByGroup(reference, focal count) {
-	if reference.hiding == complement {
-		f.nReference, f.nMatchedReference = reference, reference
-		f.PReference = nil
-	}
-	if focal.hiding == complement {
-		f.nFocal, f.nMatchedFocal = focal, focal
-		f.PFocal = nil
-	}
-}
-
-// adjustSummary moves a finding whose letter is kept back from its class to the reason.
-func (x *exposedComparison) adjustSummary(was *dif.Finding, is *exposedFinding) {
+// adjustSummary takes a finding that is kept back out of the counts: its letter becomes a
+// reason, and its test is no longer among those that chance could mislead.
+func (x *exposedComparison) adjustSummary(was *dif.Finding, is *exposedFinding, criteria dif.Criteria) {
 	before := was.Classification
-	if !is.withheld || before.Class == nil || before.Reason != nil {
+	if !is.withheld {
+		return
+	}
+	if e := &x.Summary.ExpectedByChance; before.PValue != nil && e.Tests > 0 {
+		e.Tests--
+		e.Significant = criteria.ClassAlpha * float64(e.Tests)
+	}
+	if before.Class == nil || before.Reason != nil {
 		return
 	}
 	add(&x.Summary.Classes, *before.Class, -1)
@@ -278,11 +223,18 @@ func add(counts *dif.Counts, name string, n int) {
 	*counts = append(*counts, dif.Count{Name: name, N: n})
 }
 
-// withoutMessages keeps the codes of warnings whose wording may hold numbers.
-func withoutMessages(warnings []dif.Warning) []dif.Warning {
+// withoutMessages drops the messages, which may hold numbers, of the warnings with the
+// codes named; of several with one code, one stays.
+func withoutMessages(warnings []dif.Warning, named func(code string) bool) []dif.Warning {
 	var out []dif.Warning
 	for _, w := range warnings {
-		out = append(out, dif.Warning{Code: w.Code})
+		if named(w.Code) {
+			w.Message = ""
+			if slices.Contains(out, w) {
+				continue
+			}
+		}
+		out = append(out, w)
 	}
 	return out
 }

@@ -120,10 +120,3 @@ func finite(x *float64) *float64 {
 	}
 	return x
 }
-
-func (f *exposedFinding) size() float64 {
-	if mh := f.MantelHaenszel(); mh != nil && mh.Delta != nil {
-		return math.Abs(*mh.Delta)
-	}
-	return 0
-}

@@ -100,7 +100,7 @@ func (r *report) facts() {
 func (r *report) question() string {
 	return "Differential item functioning (DIF) means that candidates of two groups who do equally well on the measure they are matched on do not do equally well on an item. " +
 		"For every item and comparison the audit estimates how large that difference is, and gives it a letter where there is enough to tell: " +
-		"A for none or a small one, B for a moderate, C for a large one; - where the item is harder and + where it is easier for the focal group."
+		"A where the rule sees no difference that it treats as important (not significant, or below 1.0 in size), B for a moderate, C for a large one; - where the item is harder and + where it is easier for the focal group."
 }
 
 // strip shows the counts of one comparison, each as large as the others.
@@ -184,7 +184,7 @@ func (r *report) frontTable() {
 	if noVerdict > 0 {
 		verdicts = wasWere(noVerdict) + " left without a verdict."
 	}
-	flags := fmt.Sprintf("%s lettered B or C, where %s would be expected by chance if no item worked differently; %s", wasWere(flagged), about(chance), verdicts)
+	flags := fmt.Sprintf("%s lettered B or C, where %s would be expected by chance if no item worked differently; %s", capitalized(wasWere(flagged)), about(chance), verdicts)
 	if noVerdict == findings {
 		flags = "None could be given a letter; the sections say why."
 	}
@@ -199,7 +199,7 @@ func (r *report) frontTable() {
 		}
 	}
 	if shownRows < n {
-		r.paragraph(fmt.Sprintf("The other %s stand in the table of section \"%s\".", plural(n-shownRows, "comparison", "comparisons"), titleCounted), caption)
+		r.paragraph(fmt.Sprintf("The table of section \"%s\" holds %s more.", titleCounted, plural(n-shownRows, "comparison", "comparisons")), caption)
 	}
 }
 

@@ -21,6 +21,9 @@ const (
 	intervalRowHeight = 4.75
 	intervalHead      = 10.5
 	intervalFoot      = 9.0
+	intervalVerdict   = 37.0 // width of the last column
+	intervalTwoLines  = 5.4  // points, in two lines
+	intervalSmallest  = 3.0
 	farthestDelta     = 6.0
 )
 
@@ -57,14 +60,14 @@ func (d *document) intervalPage(rows []intervalRow, reach float64) {
 	label := style{size: 7, ink: ink}
 	tick := style{size: 6.5, ink: quiet}
 	numberEdge := d.left() + 8
-	axis := scale{-reach, reach, d.left() + 50, d.right() - 53}
+	axis := scale{-reach, reach, d.left() + 48, d.right() - intervalVerdict - 18}
 	top := d.y + intervalHead
 	bottom := top + float64(len(rows))*intervalRowHeight
 
 	d.put(d.left()+10, top-2, "Item", style{true, 7, ink})
 	d.putRight(numberEdge, top-2, "No.", style{true, 7, ink})
-	d.putRight(d.right()-38, top-2, "D-DIF", style{true, 7, ink})
-	d.put(d.right()-35, top-2, "Class", style{true, 7, ink})
+	d.putRight(d.right()-intervalVerdict-3, top-2, "D-DIF", style{true, 7, ink})
+	d.put(d.right()-intervalVerdict, top-2, "Class", style{true, 7, ink})
 	d.put(axis.a, d.y+3, "< harder for the focal group", tick)
 	d.putRight(axis.b, d.y+3, "easier for the focal group >", tick)
 
@@ -113,15 +116,18 @@ func (d *document) intervalRow(r intervalRow, axis scale, y, numberEdge float64,
 	d.put(d.left()+10, baseline, shortenMiddle(d.text.clean(r.item), axis.a-d.left()-12, d.measure(s)), s)
 	verdict := s
 	verdict.bold = r.class != "" && r.class == r.verdict && r.class[0] != 'A'
-	d.put(d.right()-35, baseline, shorten(d.text.clean(r.verdict), 35, d.measure(verdict)), verdict)
-	d.putRight(d.right()-38, baseline, dDIF(r.delta), s)
+	lines, verdict := d.uncut(r.verdict, verdict, intervalVerdict)
+	d.stack(lines, verdict, y, func(base float64, line string) { d.put(d.right()-intervalVerdict, base, line, verdict) })
+	d.putRight(d.right()-intervalVerdict-3, baseline, dDIF(r.delta), s)
 	if r.delta == nil {
-		room := axis.b - axis.a - 4
-		text := shorten(d.text.clean(r.reason), room, d.measure(dim))
-		w := d.widthOf(text, dim)
+		lines, dim := d.uncut(r.reason, dim, axis.b-axis.a-4)
+		w := 0.0
+		for _, line := range lines {
+			w = max(w, d.widthOf(line, dim))
+		}
 		middle := (axis.a + axis.b) / 2
-		d.box(middle-w/2-1, y-1.7, w+2, 3.4, colour{255, 255, 255})
-		d.putCentre(middle, baseline, text, dim)
+		d.box(middle-w/2-1, y-intervalRowHeight/2+0.2, w+2, intervalRowHeight-0.4, colour{255, 255, 255})
+		d.stack(lines, dim, y, func(base float64, line string) { d.putCentre(middle, base, line, dim) })
 		return
 	}
 	provisional := r.class == "" || r.verdict != r.class
@@ -129,6 +135,36 @@ func (d *document) intervalRow(r intervalRow, axis scale, y, numberEdge float64,
 		d.interval(axis, *r.low, *r.high, y, provisional)
 	}
 	d.intervalMark(r, axis, y)
+}
+
+// uncut breaks text into one line, or two of smaller type, so that nothing of it is cut
+// in a row of the plot. Text too long even for that is set smaller still.
+func (d *document) uncut(t string, s style, width float64) ([]string, style) {
+	for _, size := range []float64{s.size, s.size * 0.93, s.size * 0.86} {
+		s.size = size
+		if lines := d.wrap(t, s, width); len(lines) == 1 {
+			return lines, s
+		}
+	}
+	for s.size = intervalTwoLines; ; s.size *= 0.9 {
+		lines := d.wrap(t, s, width)
+		if len(lines) <= 2 {
+			return lines, s
+		}
+		if s.size < intervalSmallest {
+			last := shorten(lines[1]+" "+lines[2], width, d.measure(s))
+			return []string{lines[0], last}, s
+		}
+	}
+}
+
+// stack writes one or two lines around the middle of a row.
+func (d *document) stack(lines []string, s style, middle float64, write func(baseline float64, line string)) {
+	height := s.size * 0.3528
+	pitch := height * 1.1
+	for i, line := range lines {
+		write(middle+0.36*height+(float64(i)-float64(len(lines)-1)/2)*pitch, line)
+	}
 }
 
 // interval draws the line, with an arrow where it leaves the axis.

@@ -63,9 +63,7 @@ func (r *report) notTested() []string {
 	if len(withheld) > 0 {
 		out = append(out, "Withheld because a group holds fewer than 10 candidates: "+list(withheld, 30)+".")
 	}
-	if labels := r.labelsNotCompared(); len(labels) > 0 {
-		out = append(out, "Labels and groupings that the plan declares but does not compare: "+list(labels, 40)+".")
-	}
+	out = append(out, r.labelsNotCompared()...)
 	var unused []string
 	for _, m := range dif.Methods() {
 		if !slices.Contains(p.Methods, m.ID()) {
@@ -89,35 +87,30 @@ func (r *report) notTested() []string {
 		"Effects on total scores and decisions about candidates, and the judgement of people on the items.")
 }
 
-// labelsNotCompared lists declared groupings and labels that stand in no comparison.
+// labelsNotCompared names the groupings that the plan declares and never compares, and
+// the labels of compared groupings, seen in the data or declared, that stand in no
+// comparison.
 func (r *report) labelsNotCompared() []string {
-	var names []string
+	var unused []string
 	for name := range r.x.plan.Groupings {
-		names = append(names, name)
+		if !slices.ContainsFunc(r.x.groupings, func(g exposedGrouping) bool { return slices.Contains(dif.GroupingParts(g.name), name) }) {
+			unused = append(unused, name)
+		}
 	}
-	slices.Sort(names)
+	slices.Sort(unused)
 	var out []string
-	for _, name := range names {
-		compared := map[string]bool{}
-		used := false
-		for i := range r.x.comparisons {
-			if c := &r.x.comparisons[i]; slices.Contains(dif.GroupingParts(c.Grouping), name) {
-				used = true
-				compared[c.Reference], compared[c.Focal] = true, true
+	if len(unused) > 0 {
+		out = append(out, "Groupings that the plan declares and does not compare: "+list(unused, 40)+".")
+	}
+	for _, g := range r.x.groupings {
+		labels := slices.Clone(g.others)
+		for _, label := range r.x.plan.Groupings[g.name].Labels {
+			if !slices.Contains(g.labels, label) && !slices.Contains(labels, label) {
+				labels = append(labels, label)
 			}
 		}
-		if !used {
-			out = append(out, name)
-			continue
-		}
-		for _, label := range r.x.plan.Groupings[name].Labels {
-			crossed := slices.ContainsFunc(r.x.comparisons, func(c exposedComparison) bool {
-				parts := dif.GroupingParts(c.Grouping)
-				return len(parts) > 1 && slices.Contains(parts, name)
-			})
-			if !compared[label] && !crossed {
-				out = append(out, name+" "+label)
-			}
+		if len(labels) > 0 {
+			out = append(out, "Labels of "+g.name+" that stand in no comparison: "+list(labels, 100)+".")
 		}
 	}
 	return out

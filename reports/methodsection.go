@@ -4,6 +4,8 @@ import (
 	"fmt"
 	"slices"
 	"strings"
+
+	"difaudit/dif"
 )
 
 // methodSection words the plan: comparisons, methods, criteria and rules, with sources.
@@ -51,12 +53,15 @@ func (r *report) methodSection() {
 	r.paragraph("Least numbers count candidates who could be matched, item by item. Below them no letter is given; the letter that would follow is shown in parentheses as provisional.", caption)
 
 	r.heading("Matching and scoring", 30)
-	variable := p.Matching.Variable
-	if len(r.x.comparisons) > 0 {
-		variable = r.x.comparisons[0].Matching.Variable
+	variables := r.matchingVariables()
+	for _, v := range variables {
+		text := capitalized(matchingWords(v.variable)) + "; " + levelWords(p.Matching.Levels) + "."
+		if len(variables) > 1 {
+			text = fmt.Sprintf("In %s: %s", v.where(), text)
+		}
+		r.entry("Matched on", text, term)
 	}
-	r.entry("Matched on", capitalized(matchingWords(variable))+"; "+levelWords(p.Matching.Levels)+".", term)
-	r.entry("Refinement", purificationWords(p.Matching.Purification), term)
+	r.entry("Refinement", r.refinementText(variables), term)
 	r.entry("Missing answers", "Omitted and invalid answers count as wrong. Answers not reached count as wrong in the matching score, and the candidate is left out on that item. "+
 		"Items not presented, or lost through a technical fault, count nowhere. "+emptyWords(p.Missing)+missingCodes(r), term)
 	r.entry("Attempts", capitalized(attemptWords(p.Attempts))+" count.", term)
@@ -69,6 +74,57 @@ func (r *report) methodSection() {
 			r.space(0.5)
 		}
 	}
+}
+
+// matchedOn is a matching variable and the comparisons, from 1, that use it.
+type matchedOn struct {
+	variable    string
+	comparisons []int
+}
+
+func (m matchedOn) where() string {
+	var numbers []string
+	for _, n := range m.comparisons {
+		numbers = append(numbers, fmt.Sprint(n))
+	}
+	if len(numbers) == 1 {
+		return "comparison " + numbers[0]
+	}
+	return "comparisons " + list(numbers, 40)
+}
+
+// matchingVariables returns the matching variables of the comparisons in order of first
+// use; that of the plan where there is no comparison.
+func (r *report) matchingVariables() []matchedOn {
+	var out []matchedOn
+	for i := range r.x.comparisons {
+		v := r.x.comparisons[i].Matching.Variable
+		k := slices.IndexFunc(out, func(m matchedOn) bool { return m.variable == v })
+		if k < 0 {
+			k = len(out)
+			out = append(out, matchedOn{variable: v})
+		}
+		out[k].comparisons = append(out[k].comparisons, i+1)
+	}
+	if len(out) == 0 {
+		return []matchedOn{{variable: r.x.plan.Matching.Variable}}
+	}
+	return out
+}
+
+// refinementText says how the matching score was refined. An external score holds no
+// item that could leave it.
+func (r *report) refinementText(variables []matchedOn) string {
+	planned := purificationWords(r.x.plan.Matching.Purification)
+	k := slices.IndexFunc(variables, func(m matchedOn) bool { return m.variable == dif.MatchExternal })
+	if k < 0 {
+		return planned
+	}
+	const external = "One stage: no item is part of the external score, so none can leave it, and there is no refinement."
+	if len(variables) == 1 {
+		return external
+	}
+	return fmt.Sprintf("In %s: %s In the others: %s", variables[k].where(), external, planned)
 }
 
 func yesNo(b bool) string {

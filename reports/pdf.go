@@ -52,7 +52,8 @@ const (
 type document struct {
 	pdf       *gofpdf.Fpdf
 	text      *textFilter
-	foot      string // title and digest on every page
+	title     string // at the foot of every page, shortened to what fits
+	mark      string // beside it and never shortened: which evidence is shown
 	running   string // head of the page, naming the section
 	landscape bool
 	y         float64
@@ -61,7 +62,7 @@ type document struct {
 	known     map[string]int // the same from the first time
 }
 
-func newDocument(title, foot string, date time.Time, first *document) *document {
+func newDocument(title, mark string, date time.Time, first *document) *document {
 	pdf := gofpdf.New("P", "mm", "A4", "")
 	pdf.SetCatalogSort(true)
 	pdf.SetCreationDate(date)
@@ -70,7 +71,7 @@ func newDocument(title, foot string, date time.Time, first *document) *document 
 	pdf.SetMargins(0, 0, 0)
 	pdf.SetProducer("difaudit", true)
 	addFonts(pdf)
-	d := &document{pdf: pdf, text: newTextFilter(), foot: foot, places: map[string]int{}}
+	d := &document{pdf: pdf, text: newTextFilter(), title: title, mark: mark, places: map[string]int{}}
 	pdf.SetTitle(d.text.clean(title), true)
 	pdf.SetSubject("Audit of differential item functioning", true)
 	if first != nil {
@@ -124,13 +125,14 @@ func (d *document) addPage(landscape bool) {
 	}
 }
 
+// footer writes the title, the evidence and the page number. Only the title is shortened.
 func (d *document) footer() {
 	y := d.floor() + 9
 	d.line(d.left(), y-4.5, d.right(), y-4.5, stroke{hairline, 0.2, false})
-	page := fmt.Sprintf("page %d of %d", d.pdf.PageNo(), d.pages)
-	d.putRight(d.right(), y, page, caption)
-	room := d.width() - d.widthOf(page, caption) - 8
-	d.put(d.left(), y, shorten(d.text.clean(d.foot), room, d.measure(caption)), caption)
+	tail := fmt.Sprintf("%s  ·  page %d of %d", d.mark, d.pdf.PageNo(), d.pages)
+	d.putRight(d.right(), y, tail, caption)
+	room := d.width() - d.widthOf(tail, caption) - 8
+	d.put(d.left(), y, shorten(d.text.clean(d.title), room, d.measure(caption)), caption)
 }
 
 // need begins a new page of the same kind when less than h is left.

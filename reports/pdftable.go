@@ -40,23 +40,45 @@ const (
 
 // table writes rows under a head that is repeated on every page.
 func (d *document) table(columns []tableColumn, rows [][]tableCell, size float64) {
+	d.tableWithNote(columns, rows, size, "")
+}
+
+// tableWithNote writes a table and a note that stands on the page of its last rows.
+func (d *document) tableWithNote(columns []tableColumn, rows [][]tableCell, size float64, note string) {
 	columns = d.fit(columns)
 	s := style{size: size, ink: ink}
+	set := make([]setRow, len(rows))
+	heights := make([]float64, len(rows))
 	for i, row := range rows {
-		lines, used, height := d.rowLines(columns, row, s)
-		switch {
-		case i == 0:
-			d.need(d.headHeight(columns, s) + height + 2)
+		set[i] = d.setRow(columns, row, s)
+		heights[i] = set[i].height
+	}
+	tail := 2.0
+	if note != "" {
+		tail += float64(len(d.wrap(note, caption, d.width()))) * caption.lineHeight()
+	}
+	if len(rows) > 0 {
+		head := d.headHeight(columns, s)
+		d.need(head + heights[0] + 2)
+		counts, pad := layRows(heights, d.room()-head, d.floor()-marginTop-head, tail)
+		next := 0
+		for p, n := range counts {
+			if p > 0 {
+				d.addPage(d.landscape)
+			}
 			d.tableHead(columns, s)
-		case d.room() < height:
-			d.addPage(d.landscape)
-			d.tableHead(columns, s)
+			for i := next; i < next+n; i++ {
+				d.tableRow(columns, rows[i], set[i], pad)
+				d.y += heights[i] - 2*(tableLine-pad)
+				d.line(d.left(), d.y, d.right(), d.y, stroke{hairline, 0.12, false})
+			}
+			next += n
 		}
-		d.tableRow(columns, row, lines, used)
-		d.y += height
-		d.line(d.left(), d.y, d.right(), d.y, stroke{hairline, 0.12, false})
 	}
 	d.space(2)
+	if note != "" {
+		d.paragraph(note, caption)
+	}
 }
 
 // fit gives the columns without a width what the others leave.
@@ -85,31 +107,40 @@ func (c tableCell) style(s style) style {
 	return s
 }
 
-// rowLines breaks the cells of a row into lines. A row that would fill most of a page
-// is set smaller, down to a quarter of the size.
-func (d *document) rowLines(columns []tableColumn, row []tableCell, s style) (lines [][]string, used style, height float64) {
+// setRow is a row broken into lines: those of each cell, the style they are set in, and
+// the height of the row.
+type setRow struct {
+	lines  [][]string
+	style  style
+	height float64
+}
+
+// setRow breaks the cells of a row into lines. A row that would fill most of a page is
+// set smaller, down to a quarter of the size.
+func (d *document) setRow(columns []tableColumn, row []tableCell, s style) setRow {
 	for {
 		most := 1
-		lines = make([][]string, len(row))
+		lines := make([][]string, len(row))
 		for i, c := range row {
 			lines[i] = d.wrap(c.text, c.style(s), columns[i].width-2*tablePad)
 			most = max(most, len(lines[i]))
 		}
-		height = float64(most)*s.lineHeight()*0.92 + 2*tableLine
+		height := float64(most)*s.lineHeight()*0.92 + 2*tableLine
 		if height <= longestShare*(d.floor()-marginTop) || s.size < 2 {
-			return lines, s, height
+			return setRow{lines, s, height}
 		}
 		s.size *= 0.8
 	}
 }
 
-func (d *document) tableRow(columns []tableColumn, row []tableCell, lines [][]string, s style) {
+// tableRow writes a row with the given space above its lines.
+func (d *document) tableRow(columns []tableColumn, row []tableCell, set setRow, pad float64) {
 	x := d.left()
 	for i, c := range row {
-		y := d.y + tableLine + s.size*0.3528
-		for _, line := range lines[i] {
-			d.align(columns[i], x, y, line, c.style(s))
-			y += s.lineHeight() * 0.92
+		y := d.y + pad + set.style.size*0.3528
+		for _, line := range set.lines[i] {
+			d.align(columns[i], x, y, line, c.style(set.style))
+			y += set.style.lineHeight() * 0.92
 		}
 		x += columns[i].width
 	}

@@ -13,15 +13,12 @@ func (r *report) picturesPart(c *exposedComparison) {
 	if c.withheld {
 		return
 	}
-	flagged, left := c.flaggedItems()
+	flagged := c.flaggedItems()
 	if len(flagged) == 0 {
 		return
 	}
 	r.heading("Flagged items", pictureHeight+14)
 	text := "Items with letter B or C, also where it is provisional. Adjacent scores are joined so that each point stands for at least 10 candidates of each group; the numbers under a picture say how many."
-	if left > 0 {
-		text += fmt.Sprintf(" Pictured are the %d with the largest differences, C before B; %s left out.", mostPictures, wasWere(left))
-	}
 	r.paragraph(text, caption)
 	r.space(1.5)
 	reference, focal := distinct(c.Reference, c.Focal)

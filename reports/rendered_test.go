@@ -4,11 +4,7 @@ package reports
 
 import (
 	"bytes"
-	"encoding/xml"
 	"fmt"
-	"image"
-	"image/png"
-	"io"
 	"os"
 	"os/exec"
 	"path/filepath"
@@ -125,12 +121,55 @@ func TestWordsAndNumbersOfTheReport(t *testing.T) {
 	}
 }
 
+func TestCountsAgreeWithTheirWords(t *testing.T) {
+	t.Parallel()
+	for name, e := range cases(t) {
+		if text := command(t, "pdftotext", "-raw", save(t, pdf(t, e)), "-"); badCount.MatchString(text) {
+			t.Errorf("%s: the report says %q", name, badCount.FindAllString(text, -1))
+		}
+		var b bytes.Buffer
+		if err := WriteTable(&b, e); err != nil {
+			t.Fatal(err)
+		}
+		if badCount.MatchString(b.String()) {
+			t.Errorf("%s: the table says %q", name, badCount.FindAllString(b.String(), -1))
+		}
+	}
+}
+
+func TestLabelsNotComparedAreCountedAndNamed(t *testing.T) {
+	t.Parallel()
+	sizes := map[string]int{"a": 300, "b": 150, "c": 40, "d": 25, "": 30}
+	e := audit(t, planFor("group", "a", "b"), invented{numbered("Q", 12), "group", sizes, nil, 0}.draw(13))
+	text := oneLine(command(t, "pdftotext", "-layout", save(t, pdf(t, e)), "-"))
+	for _, want := range []string{
+		"group a reference 300 b focal 150 other labels, not compared 65 not stated 30 all analysed 545", "Labels of group that stand in no comparison: c, d.",
+	} {
+		if !strings.Contains(text, want) {
+			t.Errorf("%q is missing", want)
+		}
+	}
+}
+
+func TestMethodsOfExternalMatching(t *testing.T) {
+	t.Parallel()
+	text := reportText(t, external(t))
+	for _, want := range []string{"One stage: no item is part of the external score", "An external score supplied with the data", "It correlates"} {
+		if !strings.Contains(text, want) {
+			t.Errorf("%q is missing", want)
+		}
+	}
+	if strings.Contains(text, "Two stages") {
+		t.Error("the report speaks of two stages")
+	}
+}
+
 // Words that a report must not use, whatever it found.
 func TestReportJudgesNobody(t *testing.T) {
 	t.Parallel()
 	for name, e := range cases(t) {
 		text := " " + strings.ToLower(reportText(t, e)) + " "
-		for _, word := range []string{"biased", "unbiased", "unfair", " fair ", "no dif found", "passed", "failed", "guilty", "nan", "infinity", "+inf", "%!"} {
+		for _, word := range []string{"biased", "unbiased", "unfair", " fair ", "no dif found", "none or small", "none or a small", "passed", "failed", "guilty", "nan", "infinity", "+inf", "%!"} {
 			if word == "nan" {
 				if slices.Contains(strings.Fields(text), "nan") {
 					t.Errorf("%s: the report says %q", name, word)
@@ -148,7 +187,7 @@ func TestReportWithholds(t *testing.T) {
 	t.Parallel()
 	all := cases(t)
 	three := oneLine(command(t, "pdftotext", "-layout", save(t, pdf(t, all["three"])), "-"))
-	for _, want := range []string{"fewer than 10", "4-few (focal) fewer than 10 withheld", "not stated withheld", "No statistic of this comparison is shown"} {
+	for _, want := range []string{"fewer than 10", "4-few (focal) fewer than 10 withheld", "not stated withheld", "all analysed 6,319", "No statistic of this comparison is shown"} {
 		if !strings.Contains(three, want) {
 			t.Errorf("%q is missing", want)
 		}
@@ -174,135 +213,6 @@ func TestReportSaysWhatItReplaced(t *testing.T) {
 	if strings.Contains(reportText(t, verbal(t, nil)), "cannot print") {
 		t.Error("the report of plain names speaks of replaced characters")
 	}
-}
-
-// word is one word of a page as pdftotext sees it, in points.
-type word struct {
-	x0, y0, x1, y1 float64
-	text           string
-}
-
-func pagesOfWords(t *testing.T, path string) (words [][]word, sizes [][2]float64) {
-	t.Helper()
-	d := xml.NewDecoder(strings.NewReader(command(t, "pdftotext", "-bbox", path, "-")))
-	d.Strict = false
-	number := func(e xml.StartElement, name string) float64 {
-		for _, a := range e.Attr {
-			if a.Name.Local == name {
-				v, err := strconv.ParseFloat(a.Value, 64)
-				if err != nil {
-					t.Fatal(err)
-				}
-				return v
-			}
-		}
-		t.Fatalf("%s has no %s", e.Name.Local, name)
-		return 0
-	}
-	for {
-		token, err := d.Token()
-		if err == io.EOF {
-			return words, sizes
-		}
-		if err != nil {
-			t.Fatal(err)
-		}
-		switch e := token.(type) {
-		case xml.StartElement:
-			switch e.Name.Local {
-			case "page":
-				words, sizes = append(words, nil), append(sizes, [2]float64{number(e, "width"), number(e, "height")})
-			case "word":
-				w := word{number(e, "xMin"), number(e, "yMin"), number(e, "xMax"), number(e, "yMax"), ""}
-				var text string
-				if err := d.DecodeElement(&text, &e); err != nil {
-					t.Fatal(err)
-				}
-				w.text = text
-				words[len(words)-1] = append(words[len(words)-1], w)
-			}
-		}
-	}
-}
-
-// Every page holds more than its head and foot, no word leaves the margins, and no two
-// words lie on each other.
-func TestPagesAreTidy(t *testing.T) {
-	t.Parallel()
-	for name, e := range cases(t) {
-		path := save(t, pdf(t, e))
-		words, sizes := pagesOfWords(t, path)
-		for p, page := range words {
-			const side, top, bottom = 17 * 72 / 25.4, 8 * 72 / 25.4, 7 * 72 / 25.4
-			body := 0
-			for _, w := range page {
-				if w.x0 < side || w.x1 > sizes[p][0]-side || w.y0 < top || w.y1 > sizes[p][1]-bottom {
-					t.Errorf("%s page %d: %q leaves the margins (%.0f %.0f %.0f %.0f)", name, p+1, w.text, w.x0, w.y0, w.x1, w.y1)
-				}
-				if w.y0 > 45 && w.y1 < sizes[p][1]-50 {
-					body++
-				}
-			}
-			if body < 5 {
-				t.Errorf("%s page %d: blank", name, p+1)
-			}
-			for i, a := range page {
-				for _, b := range page[i+1:] {
-					// The boxes of lines reach into each other a little; ink does not.
-					x, y := min(a.x1, b.x1)-max(a.x0, b.x0), min(a.y1, b.y1)-max(a.y0, b.y0)
-					if x > 1 && y > 0.45*min(a.y1-a.y0, b.y1-b.y0) {
-						t.Errorf("%s page %d: %q and %q overlap", name, p+1, a.text, b.text)
-					}
-				}
-			}
-		}
-	}
-}
-
-// Nothing is drawn outside the margins.
-func TestMarginsAreWhite(t *testing.T) {
-	t.Parallel()
-	for name, e := range cases(t) {
-		path := save(t, pdf(t, e))
-		dir := t.TempDir()
-		command(t, "pdftoppm", "-r", "50", "-gray", "-png", path, filepath.Join(dir, "page"))
-		files, err := filepath.Glob(filepath.Join(dir, "*.png"))
-		if err != nil || len(files) == 0 {
-			t.Fatal(name, err, len(files))
-		}
-		for _, file := range files {
-			b, err := os.ReadFile(file)
-			if err != nil {
-				t.Fatal(err)
-			}
-			m, err := png.Decode(bytes.NewReader(b))
-			if err != nil {
-				t.Fatal(err)
-			}
-			const margin = 32 // 16.5 mm
-			box := m.Bounds()
-			for _, strip := range []image.Rectangle{
-				image.Rect(box.Min.X, box.Min.Y, box.Min.X+margin, box.Max.Y), image.Rect(box.Max.X-margin, box.Min.Y, box.Max.X, box.Max.Y),
-				image.Rect(box.Min.X, box.Min.Y, box.Max.X, box.Min.Y+15), image.Rect(box.Min.X, box.Max.Y-12, box.Max.X, box.Max.Y),
-			} {
-				if dark := darkPixels(m, strip); dark > 0 {
-					t.Errorf("%s: %d dark pixels in the margin of %s", name, dark, filepath.Base(file))
-				}
-			}
-		}
-	}
-}
-
-func darkPixels(m image.Image, r image.Rectangle) int {
-	n := 0
-	for y := r.Min.Y; y < r.Max.Y; y++ {
-		for x := r.Min.X; x < r.Max.X; x++ {
-			if c, _, _, _ := m.At(x, y).RGBA(); c < 0xC000 {
-				n++
-			}
-		}
-	}
-	return n
 }
 
 // The characters taken as printable are those fontconfig finds in the font files.

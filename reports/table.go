@@ -10,7 +10,11 @@ import (
 	"difaudit/dif"
 )
 
-const longestTerminalName = 40 // columns of an item id in the table
+const (
+	terminalWidth       = 100 // columns that sentences are wrapped to, and lines of items kept to where names allow
+	longestTerminalName = 40  // columns of an item id in the table
+	leastTerminalName   = 16
+)
 
 // terminalColumn is a column of the plain-text table.
 type terminalColumn struct {
@@ -19,8 +23,9 @@ type terminalColumn struct {
 	text  func(f *exposedFinding) string
 }
 
-// WriteTable writes the findings for a terminal: for every comparison a heading, a line
-// for every item, and the counts beside those expected by chance. A letter in
+// WriteTable writes the findings for a terminal: first which candidates were lost, a line
+// each; then for every comparison a heading, a line for every item, and the counts beside
+// those expected by chance. Sentences are wrapped to 100 columns. A letter in
 // parentheses is provisional and stands before the reason for no verdict. Counts below
 // ten and the results that rest on them are withheld.
 func WriteTable(w io.Writer, e *dif.Evidence) error {
@@ -29,6 +34,12 @@ func WriteTable(w io.Writer, e *dif.Evidence) error {
 	}
 	x := expose(e)
 	var b strings.Builder
+	for _, sentence := range x.lost {
+		b.WriteString(terminalText(sentence) + "\n")
+	}
+	if len(x.lost) > 0 {
+		b.WriteByte('\n')
+	}
 	for i := range x.comparisons {
 		if i > 0 {
 			b.WriteByte('\n')
@@ -42,13 +53,13 @@ func WriteTable(w io.Writer, e *dif.Evidence) error {
 }
 
 func (c *exposedComparison) terminal(b *strings.Builder, p dif.Plan) {
-	fmt.Fprintf(b, "%s: %s (focal, %s) against %s (reference, %s)\n",
-		terminalText(c.Grouping), terminalText(c.Focal), c.nFocal, terminalText(c.Reference), c.nReference)
+	writeWrapped(b, "", fmt.Sprintf("%s: %s (focal, %s) against %s (reference, %s)",
+		c.Grouping, c.Focal, c.nFocal, c.Reference, c.nReference))
 	if c.withheld {
-		fmt.Fprintf(b, "  A group holds fewer than 10 candidates: no statistic is shown.\n")
+		writeWrapped(b, "  ", "A group holds fewer than 10 candidates: no statistic is shown.")
 	}
 	for _, warning := range c.Warnings {
-		fmt.Fprintf(b, "  note: %s\n", terminalText(warningMessage(warning)))
+		writeWrapped(b, "  ", "note: "+warningMessage(warning))
 	}
 	notes := c.notes()
 	columns := terminalColumns(p, notes)
@@ -59,23 +70,35 @@ func (c *exposedComparison) terminal(b *strings.Builder, p dif.Plan) {
 			lines[k+1] = append(lines[k+1], column.text(&c.findings[k]))
 		}
 	}
+	shortenNames(columns, lines)
 	writeAligned(b, columns, lines)
 	for _, n := range notes {
-		if n.mark == "" {
-			continue
+		if n.mark != "" {
+			writeWrapped(b, "  ", n.mark+": "+n.sentence)
 		}
-		fmt.Fprintf(b, "  %s: %s\n", n.mark, terminalText(n.sentence))
 	}
-	b.WriteString("  " + c.tally().terminal() + "\n")
+	writeWrapped(b, "  ", c.tally().terminal())
 	if chance := c.chanceText(p.Criteria.ClassAlpha); chance != "" {
-		b.WriteString("  " + chance + "\n")
+		writeWrapped(b, "  ", chance)
+	}
+}
+
+// writeWrapped writes a sentence in as many lines as it needs, those after the first two
+// columns further in.
+func writeWrapped(b *strings.Builder, indent, sentence string) {
+	measure := func(s string) float64 { return float64(displayWidth(s)) }
+	for i, line := range wrapText(terminalText(sentence), float64(terminalWidth-len(indent)-2), measure) {
+		if i > 0 {
+			b.WriteString("  ")
+		}
+		b.WriteString(indent + line + "\n")
 	}
 }
 
 func terminalColumns(p dif.Plan, notes []note) []terminalColumn {
 	columns := []terminalColumn{
 		{"item", false, func(f *exposedFinding) string {
-			return shortenMiddle(terminalText(f.name()), longestTerminalName, func(s string) float64 { return float64(displayWidth(s)) })
+			return terminalText(f.name())
 		}},
 		{"n_R", true, func(f *exposedFinding) string { return f.nReference.record() }},
 		{"n_F", true, func(f *exposedFinding) string { return f.nFocal.record() }},
@@ -103,6 +126,31 @@ func terminalNumber(s string) string {
 	return s
 }
 
+// shortenNames cuts the names of items, the first column, so that the lines keep to the
+// width of a terminal as far as the other columns leave room.
+func shortenNames(columns []terminalColumn, lines [][]string) {
+	others := 0
+	for i := range columns[1:] {
+		widest := 0
+		for _, line := range lines {
+			widest = max(widest, displayWidth(line[i+1]))
+		}
+		others += widest + gapBefore(columns, i+1)
+	}
+	room := max(leastTerminalName, min(longestTerminalName, terminalWidth-gapBefore(columns, 0)-others))
+	for _, line := range lines[1:] {
+		line[0] = shortenMiddle(line[0], float64(room), func(s string) float64 { return float64(displayWidth(s)) })
+	}
+}
+
+// gapBefore is the space before a column: numbers stand close together.
+func gapBefore(columns []terminalColumn, i int) int {
+	if i > 1 && columns[i].right || columns[i].head == "" {
+		return 1
+	}
+	return 2
+}
+
 // writeAligned writes the lines in columns as wide as their widest cell.
 func writeAligned(b *strings.Builder, columns []terminalColumn, lines [][]string) {
 	widths := make([]int, len(columns))
@@ -115,7 +163,7 @@ func writeAligned(b *strings.Builder, columns []terminalColumn, lines [][]string
 		var out strings.Builder
 		for i, cell := range line {
 			pad := strings.Repeat(" ", widths[i]-displayWidth(cell))
-			out.WriteString("  ")
+			out.WriteString(strings.Repeat(" ", gapBefore(columns, i)))
 			if columns[i].right {
 				out.WriteString(pad + cell)
 			} else {

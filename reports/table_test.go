@@ -76,7 +76,7 @@ func TestTableLinesUpWideAndDangerousNames(t *testing.T) {
 	}
 	at := -1
 	for _, line := range strings.Split(b.String(), "\n") {
-		if i := strings.Index(line, "  243  "); i >= 0 {
+		if i := strings.Index(line, "  243 "); i >= 0 {
 			if w := displayWidth(line[:i]); at >= 0 && w != at {
 				t.Errorf("column begins at %d instead of %d: %q", w, at, line)
 			} else {
@@ -86,5 +86,30 @@ func TestTableLinesUpWideAndDangerousNames(t *testing.T) {
 	}
 	if at < 0 {
 		t.Error("no line of findings")
+	}
+}
+
+// Sentences are wrapped, and the lines of items are as narrow as names and values allow.
+func TestTableKeepsToAHundredColumns(t *testing.T) {
+	t.Parallel()
+	e := verbal(t, nil)
+	c := &e.Comparisons[0]
+	c.Warnings = append(c.Warnings, dif.Warning{Code: "x", Message: strings.Repeat("A long sentence of a warning. ", 12)})
+	c.Items[0].Item = strings.Repeat("long-name-", 5)
+	lines := strings.Split(table(t, e), "\n")
+	names := 0
+	for i, line := range lines {
+		if w := displayWidth(line); w > 100 && !strings.HasPrefix(line, "Candidates lost") {
+			t.Errorf("%d columns: %q", w, line)
+		}
+		if strings.Contains(line, "long-name") && strings.Contains(line, "…") {
+			names++
+		}
+		if i > 0 && strings.TrimRight(line, " ") != line {
+			t.Errorf("%q ends in spaces", line)
+		}
+	}
+	if names != 1 {
+		t.Error("the long name is not shortened")
 	}
 }

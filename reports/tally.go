@@ -60,7 +60,7 @@ var outcomeHeads = []struct{ short, long string }{
 	{"B-", "moderate, harder for focal"},
 	{"B+", "moderate, easier for focal"},
 	{"A (open)", "large difference not excluded"},
-	{"A", "none or small"},
+	{"A", "not significant, or below 1.0 in size"},
 	{"No verdict", "not enough to tell"},
 }
 
@@ -84,14 +84,14 @@ func (c *exposedComparison) chanceText(alpha float64) string {
 	t := c.tally()
 	var text string
 	if t.letters() > 0 {
-		text = fmt.Sprintf("By chance alone, with no item working differently, %s of the %s would be lettered B or C (C: %s).",
-			about(e.BOrC), plural(t.letters(), "item with a letter", "items with a letter"), about(e.C))
+		text = fmt.Sprintf("By chance alone, with no item working differently, letters B or C expected among %s with a letter: %s (C: %s).",
+			plural(t.letters(), "item", "items"), about(e.BOrC), about(e.C))
 	}
 	if e.Tests > 0 {
 		if text != "" {
 			text += " "
 		}
-		text += fmt.Sprintf("Of %s, %s would have p below %s by chance.", plural(e.Tests, "test", "tests"), about(e.Significant), shortest(&alpha))
+		text += fmt.Sprintf("Tests with p below %s expected by chance: %s of %s.", shortest(&alpha), about(e.Significant), whole(e.Tests))
 	}
 	return text
 }
@@ -119,12 +119,16 @@ func (c *exposedComparison) headline() string {
 	t := c.tally()
 	var text string
 	switch flagged := t.cMinus + t.cPlus + t.bMinus + t.bPlus; {
+	case t.items == 0:
+		return "There are no items."
+	case t.letters() == 0 && t.items == 1:
+		text = fmt.Sprintf("The item could be given no letter: %s.", t.reasonsText())
 	case t.letters() == 0:
 		text = fmt.Sprintf("None of the %s could be given a letter: %s.", plural(t.items, "item", "items"), t.reasonsText())
 	case flagged == 0:
 		text = fmt.Sprintf("Of %s, none was lettered B or C.", plural(t.items, "item", "items"))
 	default:
-		text = fmt.Sprintf("Of %s, %s lettered C and %s B.", plural(t.items, "item", "items"), wasWere(t.cMinus+t.cPlus), whole(t.bMinus+t.bPlus))
+		text = fmt.Sprintf("Of %s, %s lettered C and %s lettered B.", plural(t.items, "item", "items"), wasWere(t.cMinus+t.cPlus), wasWere(t.bMinus+t.bPlus))
 	}
 	if t.letters() > 0 && t.noVerdict > 0 {
 		text += fmt.Sprintf(" No verdict was possible on %s: %s.", whole(t.noVerdict), t.reasonsText())
@@ -139,7 +143,10 @@ func (c *exposedComparison) headline() string {
 }
 
 func wasWere(n int) string {
-	if n == 1 {
+	switch n {
+	case 0:
+		return "none was"
+	case 1:
 		return "1 was"
 	}
 	return whole(n) + " were"

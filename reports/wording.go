@@ -35,8 +35,7 @@ func reasonSentence(reason string, c dif.Criteria) string {
 	case dif.ReasonNoScoreOverlap:
 		return "No matching score was reached by candidates of both groups."
 	case dif.ReasonTooFewCandidates:
-		return fmt.Sprintf("Fewer candidates could be matched than the programme's policy asks for (%s in the smaller group, %s together). "+
-			"Statistics are given so that evidence can build up; a letter in parentheses is provisional.", whole(c.MinSmallerGroup), whole(c.MinTotal))
+		return fmt.Sprintf("Fewer candidates could be matched than the programme's policy asks for (%s in the smaller group, %s together).", whole(c.MinSmallerGroup), whole(c.MinTotal))
 	case dif.ReasonTooFewInformative:
 		return "Fewer than 20 candidates stand at matching scores where both groups are present and answers differ."
 	case dif.ReasonNotEstimable:
@@ -44,7 +43,7 @@ func reasonSentence(reason string, c dif.Criteria) string {
 	case dif.ReasonNotConverged:
 		return "The fit of the model did not settle on an answer."
 	case dif.ReasonWithheldForPrivacy:
-		return "Fewer than 10 candidates of a group answered the item; its results are kept back to protect them."
+		return "Fewer than 10 candidates of a group answered the item, or could be matched on it; its results are kept back to protect them."
 	}
 	return spoken(reason) + "."
 }

@@ -266,7 +266,7 @@ func runAudit(ctx context.Context, args []string, env environment) int {
 	if out.toStdout() {
 		table = env.stderr
 	}
-	if err := out.write(func() error { return printFindings(table, evidence) }); err != nil {
+	if err := out.write(func() error { return reports.WriteTable(table, evidence) }); err != nil {
 		fmt.Fprintf(env.stderr, "difaudit audit: %v; no file was written.\n", err)
 		return statusInternal
 	}
@@ -299,30 +299,6 @@ func readFailed(ctx context.Context, command string, err error, env environment)
 		fmt.Fprintf(env.stderr, "difaudit %s: %v\n", command, err)
 	}
 	return statusBadInput, true
-}
-
-// printFindings writes the table of findings.
-func printFindings(w io.Writer, e *dif.Evidence) error {
-	for _, line := range lostLines(e) {
-		if _, err := fmt.Fprintln(w, line); err != nil {
-			return fmt.Errorf("print findings: %w", err)
-		}
-	}
-	if err := reports.WriteTable(w, e); err != nil {
-		return fmt.Errorf("print findings: %w", err)
-	}
-	return nil
-}
-
-// lostLines says which share of the candidates left the analysis, where it is worth
-// saying before any result.
-func lostLines(e *dif.Evidence) []string {
-	var lines []string
-	for _, l := range e.LostCandidates() {
-		lines = append(lines, fmt.Sprintf("Candidates lost: %.1f %% of the candidates compared by %s (reference %.1f %%, focal %.1f %%): %s.",
-			100*l.Share, l.Comparison, 100*l.Reference, 100*l.Focal, l.Why))
-	}
-	return lines
 }
 
 func digest(b []byte) string {
