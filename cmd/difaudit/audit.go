@@ -45,7 +45,6 @@ func (f *inputFiles) paths() []string { return []string{f.responses, f.items, f.
 
 // planOptions are options that take the place of keys of the plan.
 type planOptions struct {
-	set   *flag.FlagSet
 	apply []func(p *dif.Plan) error
 }
 
