@@ -222,3 +222,35 @@ func FuzzStatistics(f *testing.F) {
 		}
 	})
 }
+
+// The expected cell gives back the odds ratio it was made for, also where the plain
+// formula of the root would cancel.
+func TestExpectedCellHasTheOddsRatio(t *testing.T) {
+	t.Parallel()
+	r := rand.New(rand.NewPCG(3, 4))
+	negative := 0
+	for range 20000 {
+		x := cells{a: float64(r.IntN(5000)), b: float64(r.IntN(5000)), c: float64(r.IntN(5000)), d: float64(r.IntN(5000))}
+		if !x.informative() {
+			continue
+		}
+		alpha := math.Exp(12 * (r.Float64() - 0.5))
+		if x.focal()-x.right()+alpha*(x.reference()+x.right()) < 0 {
+			negative++
+		}
+		a := expectedCell(x, alpha)
+		low, high := math.Max(0, x.right()-x.focal()), math.Min(x.reference(), x.right())
+		if !(a > low && a < high) {
+			t.Fatalf("%+v at %v: %v is not inside (%v, %v)", x, alpha, a, low, high)
+		}
+		// One more digit of the neighbours must not be asked for than they have.
+		slack := 1e-15 * high * (1/a + 1/(x.reference()-a) + 1/(x.right()-a) + 1/(x.focal()-x.right()+a))
+		got := a * (x.focal() - x.right() + a) / ((x.reference() - a) * (x.right() - a))
+		if !(math.Abs(got/alpha-1) < 1e-12+4*slack) {
+			t.Fatalf("%+v: cell %v has the odds ratio %v, want %v", x, a, got, alpha)
+		}
+	}
+	if negative < 500 {
+		t.Errorf("only %d cases where the formula would cancel", negative)
+	}
+}
