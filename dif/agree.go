@@ -1,6 +1,7 @@
 package dif
 
 import (
+	"cmp"
 	"fmt"
 	"math"
 	"slices"
@@ -132,7 +133,100 @@ func (c *Comparison) disagreements(e *Evidence) []string {
 		say("the numbers expected by chance do not follow from the standard errors")
 	}
 	out = append(out, c.Groups.disagreements()...)
+	out = append(out, c.countsDisagree(e)...)
 	return append(out, c.stagesDisagree(e)...)
+}
+
+// countsDisagree checks the numbers of candidates of a comparison against the label counts
+// of the inputs and the findings, and its methods and matching against the plan.
+func (c *Comparison) countsDisagree(e *Evidence) []string {
+	var out []string
+	say := func(format string, args ...any) { out = append(out, fmt.Sprintf(format, args...)) }
+	i := slices.IndexFunc(e.Inputs.Groupings, func(g GroupingCount) bool { return g.Grouping == c.Grouping })
+	if i < 0 {
+		return []string{"the inputs do not count the labels of its grouping"}
+	}
+	labels := e.Inputs.Groupings[i]
+	of := func(label string) int {
+		for _, l := range labels.Labels {
+			if l.Label == label {
+				return l.N
+			}
+		}
+		return 0
+	}
+	g := &c.Groups
+	if g.Reference.N != of(c.Reference) || g.Focal.N != of(c.Focal) || g.NotStated != labels.NotStated {
+		say("the sizes of its groups are not those of the inputs")
+	}
+	external := c.Matching.Variable == MatchExternal
+	if !external && (g.Reference.NoScore+g.Focal.NoScore > 0 || c.Matching.ScoreCorrelation != nil) {
+		say("it is not matched on an external score and has numbers of one")
+	}
+	if c.Matching.Levels != e.Plan.Matching.Levels {
+		say("matching: the levels are not those of the plan")
+	}
+	for i := range c.Items {
+		f := &c.Items[i]
+		var ids []string
+		for _, r := range f.Results {
+			ids = append(ids, r.Method)
+		}
+		if len(ids) > 0 && !slices.Equal(ids, e.Plan.Methods) {
+			say("item %s: its methods are not those of the plan", f.Item)
+		}
+		if !slices.IsSortedFunc(f.Strata, func(a, b StratumSummary) int {
+			return cmp.Or(cmp.Compare(a.Set, b.Set), cmp.Compare(a.Score, b.Score))
+		}) {
+			say("item %s: its strata are not in order", f.Item)
+		}
+		// Whoever answered an item of the whole matching score stands where the score puts
+		// them: with everybody answering, the matched are those the comparison matched.
+		whole := f.NReference == g.Reference.N && f.NFocal == g.Focal.N && len(c.Matching.RemovedItems) == 0
+		if whole && (external || e.Inputs.Items[i].Role != RolePretest) &&
+			(f.NMatchedReference != g.Reference.N-g.Reference.Unmatched || f.NMatchedFocal != g.Focal.N-g.Focal.Unmatched) {
+			say("the numbers of unmatched candidates do not follow from item %s", f.Item)
+		}
+	}
+	if !c.warningsFollow(e) {
+		say("its warnings do not follow from its numbers")
+	}
+	return out
+}
+
+// warningsFollow reports whether the warnings of the comparison are those that are due. What
+// only the data tell (whether forms are named, whether somebody was presented less than
+// others) is taken from the stored warnings.
+func (c *Comparison) warningsFollow(e *Evidence) bool {
+	x := comparisonFacts{pooled: hasWarning(c.Warnings, WarnSetsPooled)}
+	large := 0
+	if len(c.Matching.Stages) > 0 && len(c.Matching.Stages[0].Items) == len(e.Inputs.Items) {
+		for i, s := range c.Matching.Stages[0].Items {
+			pretest := e.Inputs.Items[i].Role == RolePretest
+			switch {
+			case s.Detail != nil && *s.Detail == DetailNoKey:
+				x.unscored++
+				continue
+			case !pretest:
+				x.matching++
+			}
+			if !pretest && s.ComputedClass != nil && isC(*s.ComputedClass) {
+				large++
+			}
+		}
+	}
+	// Items without a limit may have added to those that could not be left out.
+	stored := hasWarning(c.Warnings, WarnPurificationRefused)
+	x.refused = stored
+	if stored == (len(c.Matching.RemovedItems) > 0) && stored || !stored && large > 0 && len(c.Matching.Stages) == 2 && len(c.Matching.RemovedItems) == 0 {
+		return false
+	}
+	for _, x.forms = range []bool{false, true} {
+		if slices.Equal(c.due(x), c.Warnings) {
+			return true
+		}
+	}
+	return false
 }
 
 // stagesDisagree checks the stages of purification: their number, the items left out of
@@ -152,6 +246,11 @@ func (c *Comparison) stagesDisagree(e *Evidence) []string {
 	for i, s := range m.Stages {
 		if s.Stage != i+1 || len(s.Items) != len(c.Items) {
 			return []string{"matching: a stage does not hold every item"}
+		}
+		for j := range s.Items {
+			if s.Items[j].Item != c.Items[j].Item {
+				return []string{"matching: the items of a stage are not those of the findings"}
+			}
 		}
 	}
 	var out []string

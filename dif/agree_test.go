@@ -59,6 +59,21 @@ func TestDisagreements(t *testing.T) {
 		{"difficulty", func(c *Comparison) { *c.Items[4].DifficultyFocal += 0.001 }, "difficulties"},
 		{"n", func(c *Comparison) { c.Items[4].NReference = 10000 }, "mean score"},
 		{"basis", func(c *Comparison) { c.Items[4].Classification.Basis = text("polytomous") }, "basis"},
+		{"comparison warnings stripped", func(c *Comparison) { c.Warnings = []Warning{} }, "warnings"},
+		{"comparison warning invented", func(c *Comparison) { c.Warnings = append(c.Warnings, Warning{"x", "y"}) }, "warnings"},
+		{"refusal invented", func(c *Comparison) { c.Warnings = append(c.Warnings, Warning{WarnPurificationRefused, "y"}) }, "warnings"},
+		{"reliability", func(c *Comparison) { c.Matching.Reliability = number(0.5) }, "warnings"},
+		{"not stated", func(c *Comparison) { c.Groups.NotStated = 5 }, "sizes"},
+		{"group size", func(c *Comparison) { c.Groups.Focal.N = 74 }, "sizes"},
+		{"without score", func(c *Comparison) { c.Groups.Focal.NoScore = 7 }, "external"},
+		{"correlation", func(c *Comparison) { c.Matching.ScoreCorrelation = number(0.5) }, "external"},
+		{"levels", func(c *Comparison) { c.Matching.Levels = LevelsThick }, "levels"},
+		{"methods", func(c *Comparison) { c.Items[4].Results = c.Items[4].Results[:2] }, "methods"},
+		{"stage names", func(c *Comparison) { c.Matching.Stages[0].Items[4].Item = "other" }, "stage"},
+		{"strata order", func(c *Comparison) {
+			s := c.Items[4].Strata
+			s[0], s[1] = s[1], s[0]
+		}, "order"},
 		{"reason", func(c *Comparison) {
 			c.Items[0].Classification.Class, c.Items[0].Classification.Reason = nil, text(ReasonTooFewCandidates)
 		}, "reason"},
@@ -74,6 +89,16 @@ func TestDisagreements(t *testing.T) {
 	forged.Inputs.Items[5].MaxScore = 2 // must not switch the checks of the item off
 	if d := forged.Disagreements(); len(d) == 0 {
 		t.Error("a changed maximum score is not noticed")
+	}
+	unmatched := mustRun(t, openPlan("gender", "F", "M", PurifyNone), verbalBinary(t))
+	unmatched.Comparisons[0].Groups.Reference.Unmatched, unmatched.Comparisons[0].Warnings = 0, []Warning{}
+	if d := strings.Join(unmatched.Disagreements(), "\n"); !strings.Contains(d, "unmatched") {
+		t.Errorf("erased lost candidates are not noticed: %s", d)
+	}
+	noGroupings := fresh()
+	noGroupings.Inputs.Groupings = []GroupingCount{}
+	if d := noGroupings.Disagreements(); len(d) == 0 {
+		t.Error("missing label counts are not noticed")
 	}
 	e := fresh()
 	e.Inputs.CandidatesAnalysed--

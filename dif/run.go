@@ -249,7 +249,7 @@ func (r *runner) auditGrouping(ctx context.Context, name string) error {
 			t.forget(k.reported.tabulation) // large, and hardly ever the score of another comparison too
 		}
 		k.out.Groups.NotStated = notStated
-		k.warn(notStated)
+		k.warn()
 		r.summaries[i] = k.out
 		r.done++
 		r.tell("compare", r.done, len(r.comparisons))

@@ -62,7 +62,7 @@ func (tab *tabulation) unmatched(reference, focal int) (lost [2]int) {
 
 // reliability returns coefficient alpha of the matching score over both groups: over all
 // candidates where they were presented the same items, else the mean over presented sets or
-// forms, weighted by candidates. Sets with less than a tenth of the candidates of the
+// forms that hold both groups, weighted by candidates. Sets with less than a tenth of the candidates of the
 // largest one are left out, so that a handful of people does not speak for the score.
 func (t *tabulator) reliability(tab *tabulation, matching []int, groups [2]int) float64 {
 	if t.external != nil {
@@ -77,10 +77,15 @@ func (t *tabulator) reliability(tab *tabulation, matching []int, groups [2]int) 
 			}
 		}
 	}
+	for place := range sizes {
+		if c := tab.places[place].counts; c[groups[0]] == nil || c[groups[1]] == nil {
+			sizes[place] = 0 // whom nobody is compared with, whatever other comparisons there are
+		}
+	}
 	largest := slices.Max(sizes)
 	var weighted, n float64
 	for place := 1; place < len(tab.places); place++ {
-		if 10*sizes[place] < largest {
+		if sizes[place] == 0 || 10*sizes[place] < largest {
 			continue
 		}
 		var items []int

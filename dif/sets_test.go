@@ -167,3 +167,35 @@ func TestItemWithMaximumZero(t *testing.T) {
 		t.Errorf("P-DIF of degenerate strata: %+v, want 0 with standard error 0", s)
 	}
 }
+
+// A third group in the plan changes nothing about a comparison.
+func TestComparisonsDoNotTouchEachOther(t *testing.T) {
+	t.Parallel()
+	d := mixedData(31, 1200, 10)
+	for c := range d.Candidates() { // only the third group and the first were presented everything
+		if d.Groupings[0].Codes[c] == 2 {
+			d.Answers.Row(c)[0] = CodeNotPresented
+		}
+	}
+	alone := mustRun(t, openPlan("g", "a", "b", PurifyTwoStage), d).Comparisons[0]
+	p := openPlan("g", "a", "b", PurifyTwoStage)
+	p.Comparisons = append(p.Comparisons, PlannedComparison{"g", "a", "c"}, PlannedComparison{"g", "c", "b"})
+	beside := mustRun(t, p, d).Comparisons[0]
+	if a, b := value(alone.Matching.Reliability), value(beside.Matching.Reliability); a != b && !(math.IsNaN(a) && math.IsNaN(b)) {
+		t.Errorf("reliability %v alone, %v beside others", a, b)
+	}
+	if alone.Groups.Focal.Unmatched != beside.Groups.Focal.Unmatched {
+		t.Errorf("unmatched %d alone, %d beside others", alone.Groups.Focal.Unmatched, beside.Groups.Focal.Unmatched)
+	}
+	for i := range alone.Items {
+		x, y := alone.Items[i], beside.Items[i]
+		for k := range x.Strata {
+			x.Strata[k].Set, y.Strata[k].Set = 0, 0 // sets are numbered over all groups of the grouping
+		}
+		a, errA := plainJSON(x)
+		b, errB := plainJSON(y)
+		if errA != nil || errB != nil || string(a) != string(b) {
+			t.Errorf("%s differs beside other comparisons:\n%s\n%s", x.Item, a, b)
+		}
+	}
+}

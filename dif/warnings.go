@@ -103,49 +103,63 @@ func (c *coverage) limitDirection() string {
 	return "in favour of the reference group"
 }
 
+// comparisonFacts are what the warnings of a comparison need beside the comparison itself.
+type comparisonFacts struct {
+	forms    bool // the data name the form of each candidate
+	pooled   bool // candidates were presented less than others of their set
+	refused  bool // purification would have left too few items
+	unscored int  // items without a key
+	matching int  // items of the stage-1 score
+}
+
 // warn lists what a reader of the comparison must know.
-func (k *comparing) warn(notStated int) {
-	add := func(code, format string, args ...any) {
-		k.out.Warnings = append(k.out.Warnings, Warning{code, fmt.Sprintf(format, args...)})
+func (k *comparing) warn() {
+	x := comparisonFacts{forms: k.data.FormOf != nil, pooled: k.packed.pooled > 0, refused: k.refused, matching: len(k.matching)}
+	for i := range k.data.Items {
+		if _, planes := k.packed.itemPlanes(i); planes == 0 {
+			x.unscored++
+		}
 	}
-	shares := k.out.Groups.lostShares()
+	k.out.Warnings = k.out.due(x)
+}
+
+// due returns the warnings that follow from a comparison, in their order.
+func (c *Comparison) due(x comparisonFacts) []Warning {
+	w := []Warning{}
+	add := func(code, format string, args ...any) { w = append(w, Warning{code, fmt.Sprintf(format, args...)}) }
+	shares := c.Groups.lostShares()
 	for g, name := range []string{"reference", "focal"} {
 		if shares[g] > lostWarning {
-			add(WarnCandidatesLost, "%.1f %% of the %s group leave the analysis: %s; %s.", 100*shares[g], name, k.whyLost(), k.adviceOnLoss())
+			add(WarnCandidatesLost, "%.1f %% of the %s group leave the analysis: %s; %s.", 100*shares[g], name, c.whyLost(), c.adviceOnLoss(x.forms))
 		}
 	}
 	if shares[1] > focalLostWarning {
 		add(WarnFocalLost, "Over %.0f %% of the focal candidates are not compared: the result may not hold for the whole group.", 100*focalLostWarning)
 	}
-	m := &k.out.Matching
+	m := &c.Matching
 	if m.Reliability != nil && *m.Reliability < lowReliability {
 		add(WarnLowReliability, "The matching score has a coefficient alpha of %.3f, below %.2f: group differences in ability leak into the results.", *m.Reliability, lowReliability)
 	}
-	if d := k.out.Groups.Difference; d != nil && math.Abs(*d) > largeDifference {
+	if d := c.Groups.Difference; d != nil && math.Abs(*d) > largeDifference {
 		add(WarnLargeGroupDifference, "The groups differ by %.2f standard deviations in the matching score: matching is less exact.", *d)
 	}
-	if k.refused {
+	if x.refused {
 		add(WarnPurificationRefused, "Leaving out the items classed C would keep fewer than half, or fewer than %d, of the matching items: all were kept.", fewestMatching)
 	}
-	if n := min(k.moments[0].n, k.moments[1].n); notStated > n {
-		add(WarnNotStated, "More candidates did not state %s than the smaller group holds: the result may depend on who answered.", k.out.Grouping)
+	if c.Groups.NotStated > min(c.Groups.Reference.N, c.Groups.Focal.N) {
+		add(WarnNotStated, "More candidates did not state %s than the smaller group holds: the result may depend on who answered.", c.Grouping)
 	}
-	if (k.variable == MatchTotal || k.variable == MatchTotalWithinForm) && k.packed.pooled > 0 {
+	if (m.Variable == MatchTotal || m.Variable == MatchTotalWithinForm) && x.pooled {
 		where := ""
-		if k.variable == MatchTotalWithinForm {
+		if m.Variable == MatchTotalWithinForm {
 			where = " of their form"
 		}
 		add(WarnSetsPooled, "Some candidates were not presented every item%s, and the plan asks for one total: an item not presented adds nothing to it, as if it had been answered wrong.", where)
 	}
-	unscored := 0
-	for i := range k.data.Items {
-		if _, planes := k.packed.itemPlanes(i); planes == 0 && k.data.Items[i].KeyMissing {
-			unscored++
-		}
+	if x.unscored > 0 {
+		add(WarnUnscoredItems, "%s without a key not scored; candidates are matched on %s.", counted(x.unscored, "item", "items"), counted(x.matching, "item", "items"))
 	}
-	if unscored > 0 {
-		add(WarnUnscoredItems, "%s without a key not scored; candidates are matched on %s.", counted(unscored, "item", "items"), counted(len(k.matching), "item", "items"))
-	}
+	return w
 }
 
 func counted(n int, one, many string) string {
@@ -155,24 +169,24 @@ func counted(n int, one, many string) string {
 	return fmt.Sprintf("%d %s", n, many)
 }
 
+const lostUnmatched = "nobody of the other group stands at their matching level"
+
 // whyLost words why labelled candidates are not compared.
-func (k *comparing) whyLost() string {
-	if k.out.Groups.Reference.NoScore+k.out.Groups.Focal.NoScore > 0 {
+func (c *Comparison) whyLost() string {
+	if c.Groups.Reference.NoScore+c.Groups.Focal.NoScore > 0 {
 		return lostUnmatched + ", or they have no external score"
 	}
 	return lostUnmatched
 }
 
-const lostUnmatched = "nobody of the other group stands at their matching level"
-
 // adviceOnLoss names what would keep more candidates.
-func (k *comparing) adviceOnLoss() string {
+func (c *Comparison) adviceOnLoss(forms bool) string {
 	switch {
-	case k.variable == MatchExternal:
+	case c.Matching.Variable == MatchExternal:
 		return "give the score to more candidates, or round it to fewer distinct values"
-	case k.variable == MatchTotalWithinSet && k.data.FormOf != nil:
+	case c.Matching.Variable == MatchTotalWithinSet && forms:
 		return "consider matching within form (total_within_form)"
-	case k.variable == MatchTotalWithinSet:
+	case c.Matching.Variable == MatchTotalWithinSet:
 		return "if candidates sat fixed forms, name them in a form column and match within form (total_within_form)"
 	}
 	return "one score a level is fine-grained for these numbers; more candidates at the same scores would be compared with larger groups"
@@ -202,11 +216,8 @@ func (e *Evidence) LostCandidates() []Lost {
 		r, f := &c.Groups.Reference, &c.Groups.Focal
 		shares := c.Groups.lostShares()
 		l := Lost{
-			Comparison: fmt.Sprintf("%s %s/%s", c.Grouping, c.Reference, c.Focal), Reference: shares[0], Focal: shares[1], Why: lostUnmatched,
+			Comparison: fmt.Sprintf("%s %s/%s", c.Grouping, c.Reference, c.Focal), Reference: shares[0], Focal: shares[1], Why: c.whyLost(),
 			Share: ratio(r.Unmatched+f.Unmatched+r.NoScore+f.NoScore, r.N+f.N+r.NoScore+f.NoScore),
-		}
-		if r.NoScore+f.NoScore > 0 {
-			l.Why += ", or they have no external score"
 		}
 		if max(l.Share, l.Reference, l.Focal) > announceLostShare {
 			lost = append(lost, l)
