@@ -110,8 +110,8 @@ func (b *blankCount) report(used []bool) {
 			slots = append(slots, slot)
 		}
 	}
-	say(b.first, "", "from this row on, %s of %s empty and the plan does not say what that means; choose one of the following",
-		plural(b.total, "item cell"), are(len(slots), "item"))
+	say(b.first, "", "from this row on, %s of %s %s empty and the plan does not say what that means; choose one of the following",
+		plural(b.total, "item cell"), plural(len(slots), "item"), either(b.total, "is", "are"))
 	say(0, "", "--empty %s: the item was not shown to the candidate; the candidate is left out of the item and matched with those shown the same items", dif.EmptyNotPresented)
 	say(0, "", "--empty %s: the candidate saw the item and left it blank; it counts as wrong", dif.EmptyOmitted)
 	say(0, "", "--empty %s: a blank with a later answer counts as omitted; blanks at the end count as not reached, which is wrong in the matching score and leaves the candidate out of the item", dif.EmptyByPosition)

@@ -48,7 +48,7 @@ func parseExternal(cell string, t *table, problems *Problems) float64 {
 		return math.NaN()
 	}
 	x, err := strconv.ParseFloat(cell, 64)
-	if err != nil || math.IsNaN(x) || math.IsInf(x, 0) {
+	if err != nil || math.IsNaN(x) || math.IsInf(x, 0) || strings.ContainsAny(cell, "_xX") {
 		problems.add(valueOutOfRange, t.name, t.row, "external_score", "the cell is not a number; write it with a decimal point, or leave it empty where the candidate has no score")
 		return math.NaN()
 	}

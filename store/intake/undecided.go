@@ -172,7 +172,7 @@ func (r *reading) answerColumn(it *item) string {
 	return it.ID
 }
 
-// keyedChoices are the declared choices of the items with a key: their options and
+// keyedChoices are the choices of the items with a key, declared or seen: their options and
 // the labels of their keys.
 type keyedChoices struct {
 	any     bool // some item has a key
@@ -187,7 +187,7 @@ func (r *reading) keyedChoices() *keyedChoices {
 			continue
 		}
 		k.any = true
-		for _, labels := range [][]string{it.Options, it.Key, it.formKeys} {
+		for _, labels := range [][]string{it.Options, it.Key, it.formKeys, it.enc.labels} {
 			for _, label := range labels {
 				_, whole := plainInteger(label)
 				k.numbers = k.numbers || whole

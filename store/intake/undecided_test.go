@@ -150,3 +150,25 @@ func TestNumbersThatLookLikeChoices(t *testing.T) {
 		t.Errorf("key on a form: %+v", it)
 	}
 }
+
+// Choices seen on items with a key count as choices, also when only some of them are keys.
+func TestNumbersSeenAsChoicesOfKeyedItems(t *testing.T) {
+	t.Parallel()
+	d := input{
+		responses: "candidate_id,sex,Q1,Q2,Q3\na,m,1,3,2\nb,f,2,3,3\nc,m,4,1,1\n",
+		items:     "item_id,key\nQ1,1\nQ2,3\nQ3,\n",
+	}.good(t).Data
+	if !d.Items[2].KeyMissing {
+		t.Errorf("an item without a key among items keyed by numbers was scored: %+v", d.Items[2])
+	}
+}
+
+func TestExternalScoresAreDecimalNumbers(t *testing.T) {
+	t.Parallel()
+	for _, cell := range []string{"1_000", "0x10", "0X1p4", "1e400", "inf"} {
+		p := input{responses: "candidate_id,sex,external_score,Q1\na,m," + cell + ",1\nb,f,2,0\n"}.problems(t)
+		if p.Count(valueOutOfRange) != 1 {
+			t.Errorf("external score %q was taken: %v", cell, p.Kinds)
+		}
+	}
+}
