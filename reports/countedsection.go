@@ -44,6 +44,9 @@ func (r *report) countedSection() {
 	r.sourceTable()
 	r.itemRoles()
 	for _, w := range in.Warnings {
+		if w.Code == "empty_label" {
+			continue // the groups above count who stated no label
+		}
 		r.space(0.8)
 		r.paragraph("Noticed on reading the data: "+warningMessage(w), small)
 	}

@@ -130,10 +130,10 @@ func (x *exposedComparison) exposeSizes(c *dif.Comparison) {
 		})
 	}
 	if x.nReference.hiding == complement {
-		x.Groups.Reference.Mean, x.Groups.Reference.SD = nil, nil
+		x.Groups.Reference.Mean, x.Groups.Reference.SD, x.Groups.Difference = nil, nil, nil
 	}
 	if x.nFocal.hiding == complement {
-		x.Groups.Focal.Mean, x.Groups.Focal.SD = nil, nil
+		x.Groups.Focal.Mean, x.Groups.Focal.SD, x.Groups.Difference = nil, nil, nil
 	}
 	if x.nReference.hiding == visible && x.nFocal.hiding == visible {
 		x.sets = exposeSets(c.Matching.Sets)

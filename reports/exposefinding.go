@@ -36,7 +36,7 @@ func exposeFinding(e *dif.Evidence, i int, f *dif.Finding, all bool) exposedFind
 	if x.withheld {
 		x.Finding = dif.Finding{
 			FindingCounts:  dif.FindingCounts{Item: f.Item, Version: f.Version},
-			Classification: dif.Classification{Reason: f.Classification.Reason, Detail: f.Classification.Detail},
+			Classification: dif.Classification{Reason: f.Classification.Reason},
 		}
 		if f.Classification.Reason == nil {
 			reason := dif.ReasonWithheldForPrivacy
