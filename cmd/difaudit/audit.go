@@ -111,7 +111,7 @@ func parseAudit(args []string) (*auditOptions, *flag.FlagSet, error) {
 			return fmt.Errorf("--%s is not part of this version: it belongs to the likelihood-ratio test", later)
 		})
 	}
-	if err := parseFlags(f, args); err != nil {
+	if err := parseFlags(f, args, "comparison"); err != nil {
 		return nil, f, err
 	}
 	switch {
@@ -179,7 +179,7 @@ func (f *inputFiles) read(ctx context.Context, env environment, plan dif.Plan, a
 func (o *auditOptions) reportTime(env environment) (time.Time, error) {
 	if o.reportDate != "" {
 		t, err := time.Parse(time.DateOnly, o.reportDate)
-		if err != nil {
+		if err != nil || t.Year() < 1 {
 			return t, fmt.Errorf("--report-date %q: write YYYY-MM-DD", o.reportDate)
 		}
 		return t, nil

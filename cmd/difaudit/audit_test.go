@@ -7,6 +7,7 @@ import (
 	"math"
 	"os"
 	"path/filepath"
+	"slices"
 	"strings"
 	"testing"
 	"time"
@@ -167,15 +168,20 @@ func TestAuditRefusesBadUsage(t *testing.T) {
 		"unknown option":  {[]string{"--responses", verbalBinary, "--no-such"}, []string{"no-such"}},
 		"output in no folder": {[]string{"--responses", verbalBinary, "--comparison", "gender:F:M", "--evidence", filepath.Join(dir, "no", "e.json")},
 			[]string{"--evidence", "does not exist"}},
-		"same output": {[]string{"--responses", verbalBinary, "--comparison", "gender:F:M", "--evidence", "-", "--csv", "-"}, []string{"same output"}},
-		"over input":  {[]string{"--responses", verbalBinary, "--comparison", "gender:F:M", "--csv", verbalBinary}, []string{"overwrite"}},
-		"date":        {[]string{"--responses", verbalBinary, "--comparison", "gender:F:M", "--report-date", "1.2.2030"}, []string{"YYYY-MM-DD"}},
-		"blanks":      {[]string{"--responses", healthSurvey, "--comparison", "sex:F:M", "--groupings", "ethnicity", "--ignore", "age_band"}, []string{"--empty"}},
+		"same output":  {[]string{"--responses", verbalBinary, "--comparison", "gender:F:M", "--evidence", "-", "--csv", "-"}, []string{"same output"}},
+		"over input":   {[]string{"--responses", verbalBinary, "--comparison", "gender:F:M", "--csv", verbalBinary}, []string{"overwrite"}},
+		"option twice": {[]string{"--responses", verbalBinary, "--comparison", "gender:F:M", "--responses=" + verbalPolytomous}, []string{"--responses is given twice"}},
+		"date":         {[]string{"--responses", verbalBinary, "--comparison", "gender:F:M", "--report-date", "1.2.2030"}, []string{"YYYY-MM-DD"}},
+		"blanks":       {[]string{"--responses", healthSurvey, "--comparison", "sex:F:M", "--groupings", "ethnicity", "--ignore", "age_band"}, []string{"--empty"}},
 		"undeclared column": {[]string{"--responses", healthSurvey, "--comparison", "sex:F:M", "--empty", "omitted"},
 			[]string{"ethnicity", "age_band", "--groupings", "--ignore"}},
 		"two inputs from standard input": {[]string{"--responses", "-", "--items", "-", "--comparison", "gender:F:M"}, []string{"standard input"}},
 	} {
-		r := difaudit(t, "", append([]string{"audit", "--evidence", filepath.Join(dir, "out.json")}, c.args...)...)
+		args := append([]string{"audit"}, c.args...)
+		if !slices.Contains(args, "--evidence") {
+			args = append(args, "--evidence", filepath.Join(dir, "out.json"))
+		}
+		r := difaudit(t, "", args...)
 		if r.status != statusBadInput {
 			t.Errorf("%s: status %d, want %d\n%s%s", name, r.status, statusBadInput, r.stdout, r.stderr)
 		}

@@ -107,8 +107,28 @@ func printOptions(w io.Writer, f *flag.FlagSet) {
 	})
 }
 
-// parseFlags parses the options of a command; messages name them as they are written.
-func parseFlags(f *flag.FlagSet, args []string) error {
+// parseFlags parses the options of a command; messages name them as they are written. An
+// option given twice is refused, unless it stands in repeatable: the last one would win
+// without a word.
+func parseFlags(f *flag.FlagSet, args []string, repeatable ...string) error {
+	seen := map[string]bool{}
+	for i := 0; i < len(args); i++ {
+		name, dashed := strings.CutPrefix(args[i], "-")
+		name = strings.TrimPrefix(name, "-")
+		if !dashed || name == "" {
+			continue
+		}
+		name, _, joined := strings.Cut(name, "=")
+		if seen[name] && f.Lookup(name) != nil && !slices.Contains(repeatable, name) {
+			return fmt.Errorf("--%s is given twice; give it once", name)
+		}
+		seen[name] = true
+		if o := f.Lookup(name); o != nil && !joined {
+			if b, ok := o.Value.(interface{ IsBoolFlag() bool }); !ok || !b.IsBoolFlag() {
+				i++ // the value
+			}
+		}
+	}
 	err := f.Parse(args)
 	if err == nil || errors.Is(err, flag.ErrHelp) {
 		return err

@@ -112,7 +112,7 @@ func parseSimulate(args []string, stdout io.Writer) (*simulateOptions, error) {
 	f.Int64Var(&o.seed, "seed", 1, "whole `NUMBER`; the same seed and options give the same files")
 	f.BoolVar(&o.gzip, "gzip", false, "compress the files that have a row for each candidate")
 	f.BoolVar(&o.force, "force", false, "overwrite the files of an earlier run")
-	if err := parseFlags(f, args); err != nil {
+	if err := parseFlags(f, args, "dif", "slope-dif"); err != nil {
 		if errors.Is(err, flag.ErrHelp) {
 			simulateHelp(stdout, f)
 		}

@@ -231,7 +231,7 @@ func TestSimulateBadUsage(t *testing.T) {
 		{[]string{"--not-reached-share", "0.5"}, "give a share from 0 to 0.25"},
 		{[]string{"--colour"}, "--colour is not an option"},
 		{[]string{"--seed", "1", "more"}, `"more" is no option`},
-		{[]string{"--out", ""}, "add --out DIR"},
+		{[]string{"--out", "elsewhere"}, "--out is given twice"},
 	} {
 		dir := filepath.Join(t.TempDir(), "out")
 		stdout, stderr := simulated(t, 2, dir, tt.args...)
@@ -241,6 +241,10 @@ func TestSimulateBadUsage(t *testing.T) {
 		if _, err := os.Stat(dir); err == nil {
 			t.Errorf("%v: a refused run made its directory", tt.args)
 		}
+	}
+	var out, errs bytes.Buffer
+	if got := runSimulate(t.Context(), nil, &out, &errs); got != 2 || !strings.Contains(errs.String(), "add --out DIR") {
+		t.Errorf("without a directory: status %d, %s", got, errs.String())
 	}
 	file := filepath.Join(t.TempDir(), "file")
 	if err := os.WriteFile(file, nil, 0o666); err != nil {
