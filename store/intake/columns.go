@@ -145,3 +145,17 @@ func (r *reading) missingGroupings() {
 		}
 	}
 }
+
+// groupColumns returns the field of every grouping the plan uses in the response file, -1
+// where it has none, and marks those found.
+func (r *reading) groupColumns() []int {
+	fields := make([]int, len(r.groupings))
+	for g, grouping := range r.groupings {
+		fields[g] = -1
+		if field, has := r.responses.column[grouping.name]; has {
+			grouping.found = true
+			fields[g] = field
+		}
+	}
+	return fields
+}

@@ -28,14 +28,7 @@ func (r *reading) readLong(ctx context.Context) error {
 	t := r.responses
 	ok := t.require(candidateColumn)
 	l.at = r.specialColumns()
-	l.groups = make([]int, len(r.groupings))
-	for g, grouping := range r.groupings {
-		l.groups[g] = -1
-		if field, has := t.column[grouping.name]; has {
-			grouping.found = true
-			l.groups[g] = field
-		}
-	}
+	l.groups = r.groupColumns()
 	for _, name := range t.header {
 		if ok && r.columnUse(name) == useUndeclared {
 			r.problems.add(undeclaredColumn, t.name, t.row, name,

@@ -157,14 +157,7 @@ func (w *wide) assign() bool {
 	t := w.responses
 	ok := t.require(candidateColumn)
 	w.at = w.specialColumns()
-	w.groups = make([]int, len(w.groupings))
-	for g, grouping := range w.groupings {
-		w.groups[g] = -1
-		if field, has := t.column[grouping.name]; has {
-			grouping.found = true
-			w.groups[g] = field
-		}
-	}
+	w.groups = w.groupColumns()
 	fieldOf := map[string]int{} // by item id
 	var order []string
 	for field, name := range t.header {
