@@ -266,7 +266,7 @@ func runAudit(ctx context.Context, args []string, env environment) int {
 		table = env.stderr
 	}
 	if err := out.write(func() error { return reports.WriteTable(table, evidence) }); err != nil {
-		fmt.Fprintf(env.stderr, "difaudit audit: %v; no file was written.\n", err)
+		fmt.Fprintf(env.stderr, "difaudit audit: %v.\n", err)
 		return statusInternal
 	}
 	for _, t := range out.targets {

@@ -8,6 +8,7 @@ import (
 	"io/fs"
 	"os"
 	"path/filepath"
+	"strings"
 )
 
 // outputs are files written together at the end of a command: each first under a name
@@ -111,16 +112,23 @@ func full(path string) string {
 }
 
 // write writes every target. Files appear under their names only when everything is
-// written, standard output and what say prints included.
+// written, standard output and what say prints included; an error says whether any did.
 func (o *outputs) write(say func() error) (err error) {
 	written := make([]string, len(o.targets))
+	var inPlace []string
 	defer func() {
-		if err != nil {
-			for _, name := range written {
-				if name != "" {
-					os.Remove(name)
-				}
+		if err == nil {
+			return
+		}
+		for _, name := range written {
+			if name != "" {
+				os.Remove(name)
 			}
+		}
+		if len(inPlace) == 0 {
+			err = fmt.Errorf("%w; no file was written", err)
+		} else {
+			err = fmt.Errorf("%w; already written: %s", err, strings.Join(inPlace, ", "))
 		}
 	}()
 	var out bytes.Buffer
@@ -154,6 +162,7 @@ func (o *outputs) write(say func() error) (err error) {
 			return fmt.Errorf("%s: %w", t.option, err)
 		}
 		written[i] = ""
+		inPlace = append(inPlace, t.path)
 	}
 	return nil
 }

@@ -6,6 +6,7 @@ import (
 	"io"
 	"os"
 	"path/filepath"
+	"strings"
 	"testing"
 )
 
@@ -85,5 +86,28 @@ func TestOutputsOfOneFileAreRefused(t *testing.T) {
 		if err := o.check([]string{other}); err == nil {
 			t.Errorf("%s, an input, may be overwritten", other)
 		}
+	}
+}
+
+// When a file cannot be put in place after others were, the error names those.
+func TestOutputsThatCannotAllBePlaced(t *testing.T) {
+	t.Parallel()
+	dir := t.TempDir()
+	first, second := filepath.Join(dir, "first"), filepath.Join(dir, "second")
+	write := func(w io.Writer) error { _, err := io.WriteString(w, "x"); return err }
+	o := outputs{stdout: io.Discard}
+	o.add("--a", first, 0o600, write)
+	o.add("--b", second, 0o600, write)
+	err := o.write(func() error { return os.MkdirAll(filepath.Join(second, "full"), 0o700) })
+	if err == nil || !strings.Contains(err.Error(), "already written: "+first) {
+		t.Errorf("error %v", err)
+	}
+	if left, err := os.ReadDir(dir); err != nil || len(left) != 2 {
+		t.Errorf("%d entries are left, want the file and the folder (%v)", len(left), err)
+	}
+	o = outputs{stdout: closedWriter{}}
+	o.add("--a", filepath.Join(dir, "third"), 0o600, write)
+	if err := o.write(func() error { return nil }); err == nil || !strings.Contains(err.Error(), "no file was written") {
+		t.Errorf("error %v", err)
 	}
 }
