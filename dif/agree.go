@@ -194,39 +194,25 @@ func (c *Comparison) countsDisagree(e *Evidence) []string {
 	return out
 }
 
-// warningsFollow reports whether the warnings of the comparison are those that are due. What
-// only the data tell (whether forms are named, whether somebody was presented less than
-// others) is taken from the stored warnings.
+// warningsFollow reports whether the warnings of the comparison are those that are due, by
+// their codes: another version may word them otherwise. Whether somebody was presented less
+// than others only the data tell, so that is taken from the stored warnings.
 func (c *Comparison) warningsFollow(e *Evidence) bool {
-	x := comparisonFacts{pooled: hasWarning(c.Warnings, WarnSetsPooled)}
-	large := 0
-	if len(c.Matching.Stages) > 0 && len(c.Matching.Stages[0].Items) == len(e.Inputs.Items) {
-		for i, s := range c.Matching.Stages[0].Items {
-			pretest := e.Inputs.Items[i].Role == RolePretest
-			switch {
-			case s.Detail != nil && *s.Detail == DetailNoKey:
-				x.unscored++
-				continue
-			case !pretest:
-				x.matching++
-			}
-			if !pretest && s.ComputedClass != nil && isC(*s.ComputedClass) {
-				large++
-			}
+	x := comparisonFacts{
+		pooled: hasWarning(c.Warnings, WarnSetsPooled), refused: hasWarning(c.Warnings, WarnPurificationRefused),
+	}
+	for i := range c.Items {
+		if d := c.Items[i].Classification.Detail; d != nil && *d == DetailNoKey {
+			x.unscored++
+		} else if e.Inputs.Items[i].Role != RolePretest {
+			x.matching++
 		}
 	}
-	// Items without a limit may have added to those that could not be left out.
-	stored := hasWarning(c.Warnings, WarnPurificationRefused)
-	x.refused = stored
-	if stored == (len(c.Matching.RemovedItems) > 0) && stored || !stored && large > 0 && len(c.Matching.Stages) == 2 && len(c.Matching.RemovedItems) == 0 {
-		return false
-	}
-	for _, x.forms = range []bool{false, true} {
-		if slices.Equal(c.due(x), c.Warnings) {
-			return true
-		}
-	}
-	return false
+	return sameCodes(c.due(x), c.Warnings)
+}
+
+func sameCodes(a, b []Warning) bool {
+	return slices.EqualFunc(a, b, func(x, y Warning) bool { return x.Code == y.Code })
 }
 
 // stagesDisagree checks the stages of purification: their number, the items left out of
@@ -279,10 +265,8 @@ func (c *Comparison) stagesDisagree(e *Evidence) []string {
 			limitless = append(limitless, s.Item)
 		}
 	}
-	refused := false
-	for _, w := range c.Warnings {
-		refused = refused || w.Code == WarnPurificationRefused
-	}
+	refused := hasWarning(c.Warnings, WarnPurificationRefused)
+	leaving := len(large) + len(limitless) // at most: the exact test of the latter needs the tables
 	last := m.Stages[len(m.Stages)-1]
 	if !slices.Equal(last.RemovedItems, m.RemovedItems) || len(m.Stages[0].RemovedItems) > 0 {
 		out = append(out, "matching: the items left out are not those of the last stage")
@@ -293,7 +277,9 @@ func (c *Comparison) stagesDisagree(e *Evidence) []string {
 		}
 	}
 	switch {
-	case stages == 1 || refused && len(m.RemovedItems) == 0:
+	case refused && (stages == 1 || len(m.RemovedItems) > 0 || mayRemove(matching, leaving)):
+		out = append(out, "matching: purification is said to have been refused, and it was not")
+	case refused || stages == 1:
 	case len(m.RemovedItems) > 0 && !mayRemove(matching, len(m.RemovedItems)):
 		out = append(out, "matching: too many items were left out")
 	default:
@@ -355,10 +341,10 @@ func (f *Finding) disagreements(item *ItemSummary, plan Plan) []string {
 			}
 		}
 		c.n = [2]int{f.NReference, f.NFocal}
-		if w := f.warnings(&c, plan.Criteria); !slices.Equal(w, f.Warnings) {
+		if !sameCodes(f.warnings(&c, plan.Criteria), f.Warnings) {
 			say("the warnings do not follow from the statistics")
 		}
-		if !nearly(f.DifficultyReference, number(normalDelta(value64(f.PReference))), 1e-9) || !nearly(f.DifficultyFocal, number(normalDelta(value64(f.PFocal))), 1e-9) {
+		if !nearly(f.DifficultyReference, number(normalDelta(value(f.PReference))), 1e-9) || !nearly(f.DifficultyFocal, number(normalDelta(value(f.PFocal))), 1e-9) {
 			say("the difficulties do not follow from the proportions correct")
 		}
 	} else if len(f.Results) > 0 {
@@ -366,7 +352,7 @@ func (f *Finding) disagreements(item *ItemSummary, plan Plan) []string {
 	}
 	for g, p := range [2]*float64{f.PReference, f.PFocal} {
 		n := [2]int{f.NReference, f.NFocal}[g]
-		points := value64(p) * float64(n*max(1, item.MaxScore))
+		points := value(p) * float64(n*max(1, item.MaxScore))
 		if (p == nil) != (n == 0) || n > 0 && !(math.Abs(points-math.Round(points)) < 1e-6*math.Max(1, points)) {
 			say("a mean score is not a number of points over its candidates")
 		}
@@ -477,7 +463,8 @@ func nearly(a, b *float64, relative float64) bool {
 	return *a == *b || math.Abs(*a-*b) <= relative*math.Max(math.Abs(*a), math.Abs(*b))
 }
 
-func value64(p *float64) float64 {
+// value returns the number, NaN where it does not exist.
+func value(p *float64) float64 {
 	if p == nil {
 		return math.NaN()
 	}

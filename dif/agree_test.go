@@ -59,9 +59,11 @@ func TestDisagreements(t *testing.T) {
 		{"difficulty", func(c *Comparison) { *c.Items[4].DifficultyFocal += 0.001 }, "difficulties"},
 		{"n", func(c *Comparison) { c.Items[4].NReference = 10000 }, "mean score"},
 		{"basis", func(c *Comparison) { c.Items[4].Classification.Basis = text("polytomous") }, "basis"},
+		{"warning replaced", func(c *Comparison) { c.Items[0].Warnings[0].Code = WarnVeryEasy }, "warnings do not follow from the statistics"},
+		{"comparison warning replaced", func(c *Comparison) { c.Warnings[0].Code = WarnLowReliability }, "warnings do not follow from its numbers"},
 		{"comparison warnings stripped", func(c *Comparison) { c.Warnings = []Warning{} }, "warnings"},
 		{"comparison warning invented", func(c *Comparison) { c.Warnings = append(c.Warnings, Warning{"x", "y"}) }, "warnings"},
-		{"refusal invented", func(c *Comparison) { c.Warnings = append(c.Warnings, Warning{WarnPurificationRefused, "y"}) }, "warnings"},
+		{"refusal invented", func(c *Comparison) { c.Warnings = append(c.Warnings, Warning{WarnPurificationRefused, "y"}) }, "refused"},
 		{"reliability", func(c *Comparison) { c.Matching.Reliability = number(0.5) }, "warnings"},
 		{"not stated", func(c *Comparison) { c.Groups.NotStated = 5 }, "sizes"},
 		{"group size", func(c *Comparison) { c.Groups.Focal.N = 74 }, "sizes"},
@@ -89,6 +91,22 @@ func TestDisagreements(t *testing.T) {
 	forged.Inputs.Items[5].MaxScore = 2 // must not switch the checks of the item off
 	if d := forged.Disagreements(); len(d) == 0 {
 		t.Error("a changed maximum score is not noticed")
+	}
+	refused := mustRun(t, openPlan("sex", "F", "M", PurifyTwoStage), readScored(t, "../testdata/nz-health-survey/nz-worry.csv", 3))
+	if d := refused.Disagreements(); len(d) > 0 {
+		t.Errorf("a refused purification: %v", d)
+	}
+	m := &refused.Comparisons[0].Matching
+	m.RemovedItems = []string{"moody"}
+	m.Stages[1].RemovedItems = m.RemovedItems
+	if d := strings.Join(refused.Disagreements(), "\n"); !strings.Contains(d, "said to have been refused") {
+		t.Errorf("an item left out beside a refusal is not noticed: %s", d)
+	}
+	reworded := fresh()
+	reworded.Comparisons[0].Warnings[0].Message = "in other words"
+	reworded.Comparisons[0].Items[0].Warnings[0].Message = "in other words"
+	if d := reworded.Disagreements(); len(d) > 0 {
+		t.Errorf("evidence of a version that words its warnings otherwise: %v", d)
 	}
 	unmatched := mustRun(t, openPlan("gender", "F", "M", PurifyNone), verbalBinary(t))
 	unmatched.Comparisons[0].Groups.Reference.Unmatched, unmatched.Comparisons[0].Warnings = 0, []Warning{}

@@ -4,11 +4,8 @@ package dif
 // planes are first..first+width-1, and returns their number. Planes count candidates
 // with a score of at least k, so categories are differences of neighbouring planes.
 func (t *levelCounts) categories(level, first, width int, out []uint32) uint32 {
-	n := t.n[level]
+	n := t.answered(level, first)
 	at := level*t.planes + first
-	if t.missing != nil {
-		n -= t.missing[at]
-	}
 	above := n
 	for k := range width {
 		reached := t.right[at+k]

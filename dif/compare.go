@@ -14,7 +14,6 @@ type comparing struct {
 	first    *pairing // tables of the stage-1 score
 	reported *pairing // tables the findings come from
 	groups   [2]int   // reference and focal group of the arrangement
-	removed  []int    // items left out of the reported matching score
 	refused  bool     // purification would have left too few items
 	lost     [2]int   // candidates at levels without the other group, stage 1
 	noScore  [2]int   // labelled candidates without the external score
@@ -116,7 +115,6 @@ func (k *comparing) purify(ctx context.Context) error {
 		}
 		k.reported = second.pair(k.arrangement, k.groups)
 	}
-	k.removed = large
 	k.out.Matching.RemovedItems = k.names(large)
 	_, err = k.stage(ctx, 2, k.reported, large)
 	return err

@@ -93,9 +93,9 @@ func (f *Finding) classify(categories int, c *coverage, criteria Criteria) {
 	mh := f.MantelHaenszel()
 	if mh != nil {
 		k.Basis = text(idMantelHaenszel)
-		decide, other := mh.PValue, mh.PValueCorrected
+		decide := mh.PValue
 		if criteria.ContinuityCorrection {
-			decide, other = other, decide
+			decide = mh.PValueCorrected
 		}
 		k.PValue = decide
 		k.ComputedClass = letterOf(mh, decide, criteria.ClassAlpha)

@@ -25,7 +25,6 @@ type packed struct {
 type presented struct {
 	form  int // index into Data.Forms, -1 where the form does not matter
 	items []bool
-	n     int
 }
 
 // planes returns the number of bit planes.
@@ -141,29 +140,36 @@ func (p *packed) assignSets(partial []bool, by setting) {
 	for c := range p.set {
 		if whole >= 0 && !partial[c] {
 			p.set[c] = whole
-			p.sets[whole].n++
 			continue
 		}
 		clear(key)
-		tables := p.scores[p.form(c)]
-		items := make([]bool, len(d.Items))
-		for i, code := range d.Answers.Row(c) {
-			if tables[i][code] != noScore || shown(tables[i], code, p.first[i+1] > p.first[i]) {
-				items[i] = true
+		p.eachItem(c, func(i int, shown bool) {
+			if shown {
 				key[i/8] |= 1 << (i % 8)
 			}
-		}
+		})
 		s, ok := index[string(key)]
 		if !ok {
 			s = int32(len(p.sets))
 			index[string(key)] = s
+			items := make([]bool, len(d.Items))
+			for i := range items {
+				items[i] = key[i/8]>>(i%8)&1 == 1
+			}
 			p.sets = append(p.sets, presented{form: -1, items: items})
 		}
 		if !partial[c] {
 			whole = s
 		}
 		p.set[c] = s
-		p.sets[s].n++
+	}
+}
+
+// eachItem tells for every item whether candidate c was presented it.
+func (p *packed) eachItem(c int, tell func(item int, shown bool)) {
+	tables := p.scores[p.form(c)]
+	for i, code := range p.data.Answers.Row(c) {
+		tell(i, tables[i][code] != noScore || shown(tables[i], code, p.first[i+1] > p.first[i]))
 	}
 }
 
@@ -178,19 +184,12 @@ func (p *packed) assignForms(partial []bool, apart bool) {
 			p.sets = append(p.sets, presented{form: f, items: make([]bool, len(d.Items))})
 		}
 	}
-	each := func(c int, of func(item int, shown bool)) {
-		tables := p.scores[p.form(c)]
-		for i, code := range d.Answers.Row(c) {
-			of(i, tables[i][code] != noScore || shown(tables[i], code, p.first[i+1] > p.first[i]))
-		}
-	}
 	whole := make([]bool, len(p.sets)) // somebody was presented everything
 	for c := range p.set {
 		if apart {
 			p.set[c] = int32(d.FormOf[c])
 		}
 		set := &p.sets[p.set[c]]
-		set.n++
 		switch {
 		case whole[p.set[c]]:
 		case !partial[c]:
@@ -199,13 +198,13 @@ func (p *packed) assignForms(partial []bool, apart bool) {
 				set.items[i] = true
 			}
 		default:
-			each(c, func(i int, shown bool) { set.items[i] = set.items[i] || shown })
+			p.eachItem(c, func(i int, shown bool) { set.items[i] = set.items[i] || shown })
 		}
 	}
 	for c := range p.set {
 		if partial[c] {
 			less := false
-			each(c, func(i int, shown bool) { less = less || p.sets[p.set[c]].items[i] && !shown })
+			p.eachItem(c, func(i int, shown bool) { less = less || p.sets[p.set[c]].items[i] && !shown })
 			if less {
 				p.pooled++
 			}

@@ -27,13 +27,6 @@ func within(t *testing.T, what string, got, want, absolute float64) {
 	}
 }
 
-func value(p *float64) float64 {
-	if p == nil {
-		return math.NaN()
-	}
-	return *p
-}
-
 // reference reads the expected values of one folder.
 func reference[T any](t *testing.T, folder string) T {
 	t.Helper()

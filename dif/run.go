@@ -86,12 +86,11 @@ func (r *runner) run(ctx context.Context) (*Evidence, error) {
 	}
 	r.tell("score", 1, 1)
 	r.excludeWithoutScore(e)
-	for _, name := range names {
-		e.Inputs.Groupings = append(e.Inputs.Groupings, r.countLabels(r.groupings[name]))
-	}
 	r.summaries = make([]Comparison, len(r.comparisons))
 	for _, name := range names {
-		if err := r.auditGrouping(ctx, name); err != nil {
+		labels := r.countLabels(r.groupings[name])
+		e.Inputs.Groupings = append(e.Inputs.Groupings, labels)
+		if err := r.auditGrouping(ctx, name, labels.NotStated); err != nil {
 			return nil, err
 		}
 	}
@@ -192,7 +191,7 @@ func (r *runner) countLabels(g *groupingCodes) GroupingCount {
 // auditGrouping carries out every comparison of one grouping: one counting pass over
 // all its groups for the first stage, then one pass per comparison over its two groups
 // for the second, shared where the same items were dropped.
-func (r *runner) auditGrouping(ctx context.Context, name string) error {
+func (r *runner) auditGrouping(ctx context.Context, name string, notStated int) error {
 	codes := r.groupings[name]
 	group := map[string]int{}
 	var groups []int
@@ -234,7 +233,6 @@ func (r *runner) auditGrouping(ctx context.Context, name string) error {
 	if err != nil {
 		return fmt.Errorf("count %s: %w", name, err)
 	}
-	notStated := r.countLabels(codes).NotStated
 	for i, c := range r.comparisons {
 		if c.grouping != name {
 			continue

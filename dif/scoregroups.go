@@ -2,7 +2,6 @@ package dif
 
 import (
 	"math"
-	"math/bits"
 	"slices"
 )
 
@@ -62,8 +61,9 @@ func (tab *tabulation) unmatched(reference, focal int) (lost [2]int) {
 
 // reliability returns coefficient alpha of the matching score over both groups: over all
 // candidates where they were presented the same items, else the mean over presented sets or
-// forms that hold both groups, weighted by candidates. Sets with less than a tenth of the candidates of the
-// largest one are left out, so that a handful of people does not speak for the score.
+// forms that hold both groups, weighted by candidates. Sets with less than a tenth of the
+// candidates of the largest one are left out, so that a handful of people does not speak
+// for the score.
 func (t *tabulator) reliability(tab *tabulation, matching []int, groups [2]int) float64 {
 	if t.external != nil {
 		return math.NaN()
@@ -151,29 +151,23 @@ func (t *tabulator) scoreCorrelation(mask []uint64, groups [2]int) float64 {
 		return math.NaN()
 	}
 	a, w := t.arrangement, t.arrangement.packed.words
+	var scores []float64
+	var totals []int32
+	for _, r := range a.runs {
+		if r.group == groups[0] || r.group == groups[1] {
+			scores = append(scores, t.external[r.from:r.to]...)
+			total := make([]int32, r.to-r.from)
+			scoreRows(total, a.rows[r.from*w:r.to*w], mask)
+			totals = append(totals, total...)
+		}
+	}
+	var mean float64
+	for _, s := range scores {
+		mean += s / float64(len(scores))
+	}
 	var m moments
-	var mean, n float64
-	for pass := range 2 { // deviations from the mean keep the sums accurate
-		for _, r := range a.runs {
-			if r.group != groups[0] && r.group != groups[1] {
-				continue
-			}
-			for i := r.from; i < r.to; i++ {
-				if pass == 0 {
-					mean += t.external[i]
-					n++
-					continue
-				}
-				total := 0
-				for k, word := range mask {
-					total += bits.OnesCount64(a.rows[i*w+k] & word)
-				}
-				m.add(1, float64(total), t.external[i]-mean)
-			}
-		}
-		if pass == 0 {
-			mean /= n
-		}
+	for i, s := range scores { // deviations from the mean keep the sums accurate
+		m.add(1, float64(totals[i]), s-mean)
 	}
 	return m.correlation()
 }

@@ -144,11 +144,9 @@ func (t *tabulator) occurringLevels(p *placeTables, mask []uint64) {
 	for _, ri := range p.runs {
 		r := a.runs[ri]
 		level := make([]int32, r.to-r.from)
-		for i := range level {
-			for k, m := range mask {
-				level[i] += int32(bits.OnesCount64(a.rows[(r.from+i)*w+k] & m))
-			}
-			p.scores = append(p.scores, float64(level[i]))
+		scoreRows(level, a.rows[r.from*w:r.to*w], mask)
+		for _, s := range level {
+			p.scores = append(p.scores, float64(s))
 		}
 		p.level = append(p.level, level)
 	}

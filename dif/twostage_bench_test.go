@@ -85,7 +85,7 @@ func BenchmarkMHTwoStage(b *testing.B) {
 				if err := k.purify(context.Background()); err != nil {
 					b.Fatal(err)
 				}
-				if len(k.removed) == 0 || len(k.out.Matching.Stages) != 2 {
+				if len(k.out.Matching.RemovedItems) == 0 || len(k.out.Matching.Stages) != 2 {
 					b.Fatalf("the second stage had nothing to do: %v", k.out.Matching.RemovedItems)
 				}
 			}
