@@ -120,7 +120,7 @@ func (c *Comparison) disagreements(e *Evidence) []string {
 			say("item %s: the q-value does not follow from the p-values", c.Items[i].Item)
 		}
 	}
-	s := summarize(c.Items, e.Plan.Criteria)
+	s := Summarize(c.Items, e.Plan.Criteria)
 	stored := &c.Summary
 	if !slices.Equal(s.Classes, stored.Classes) || !slices.Equal(s.NoVerdict, stored.NoVerdict) {
 		say("the summary does not count the letters and reasons of its items")

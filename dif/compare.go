@@ -46,7 +46,7 @@ func (k *comparing) compare(ctx context.Context, c labelled) error {
 		return err
 	}
 	k.out.Items = findings
-	k.out.Summary = summarize(findings, k.plan.Criteria)
+	k.out.Summary = Summarize(findings, k.plan.Criteria)
 	return nil
 }
 
@@ -202,8 +202,9 @@ func (k *comparing) eachItem(ctx context.Context, work func(item int, b *itemTab
 	return ctx.Err()
 }
 
-// summarize counts the findings.
-func summarize(findings []Finding, c Criteria) Summary {
+// Summarize counts findings: their letters, the reasons of those without one, and what
+// chance alone would give among them. Reports use it for the findings they may show.
+func Summarize(findings []Finding, c Criteria) Summary {
 	s := Summary{NoVerdict: Counts{}}
 	for _, l := range Letters() {
 		s.Classes = append(s.Classes, Count{Name: l})

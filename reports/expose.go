@@ -75,23 +75,16 @@ func (x *exposed) comparison(e *dif.Evidence, c *dif.Comparison) exposedComparis
 	out.Items, out.Matching.Stages, out.Matching.Sets = nil, nil, nil
 	out.sharesHidden = out.withheld || x.hidesLost(e, c, out.nReference, out.nFocal)
 	out.exposeSizes(c)
-	out.Summary.Classes = slices.Clone(c.Summary.Classes)
-	out.Summary.NoVerdict = slices.Clone(c.Summary.NoVerdict)
-	lettered := out.Summary.Classes.Total()
 	withheldItems := map[string]bool{}
+	var shown []dif.Finding // as they may be exported, to be counted
 	for i := range c.Items {
 		f := exposeFinding(e, i, &c.Items[i], out.withheld)
 		withheldItems[f.Item] = withheldItems[f.Item] || f.withheld
 		f.hideGroups(out.nReference.hiding == complement, out.nFocal.hiding == complement)
-		out.adjustSummary(&c.Items[i], &f, e.Plan.Criteria)
 		out.findings = append(out.findings, f)
+		shown = append(shown, f.Finding)
 	}
-	if n := out.Summary.Classes.Total(); n < lettered {
-		// What chance gives is known for all letters together only.
-		share := float64(n) / float64(lettered)
-		out.Summary.ExpectedByChance.BOrC *= share
-		out.Summary.ExpectedByChance.C *= share
-	}
+	out.Summary = dif.Summarize(shown, e.Plan.Criteria)
 	out.coverItemCounts(c)
 	out.Matching.RemovedItems = nil
 	for _, item := range c.Matching.RemovedItems {
@@ -190,37 +183,6 @@ func (x *exposedComparison) coverItemCounts(c *dif.Comparison) {
 			}
 		}
 	}
-}
-
-// adjustSummary takes a finding that is kept back out of the counts: its letter becomes a
-// reason, and its test is no longer among those that chance could mislead.
-func (x *exposedComparison) adjustSummary(was *dif.Finding, is *exposedFinding, criteria dif.Criteria) {
-	before := was.Classification
-	if !is.withheld {
-		return
-	}
-	if e := &x.Summary.ExpectedByChance; before.PValue != nil && e.Tests > 0 {
-		e.Tests--
-		e.Significant = criteria.ClassAlpha * float64(e.Tests)
-	}
-	if before.Class == nil || before.Reason != nil {
-		return
-	}
-	add(&x.Summary.Classes, *before.Class, -1)
-	add(&x.Summary.NoVerdict, dif.ReasonWithheldForPrivacy, 1)
-	if slices.ContainsFunc(was.Warnings, func(w dif.Warning) bool { return w.Code == dif.WarnLargeNotExcluded }) {
-		x.Summary.LargeDifferenceNotExcluded--
-	}
-}
-
-func add(counts *dif.Counts, name string, n int) {
-	for i := range *counts {
-		if (*counts)[i].Name == name {
-			(*counts)[i].N += n
-			return
-		}
-	}
-	*counts = append(*counts, dif.Count{Name: name, N: n})
 }
 
 // withoutMessages drops the messages, which may hold numbers, of the warnings with the

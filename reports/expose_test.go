@@ -82,6 +82,7 @@ func TestItemOfFewCandidatesIsWithheldAlone(t *testing.T) {
 	items[5].NFocal, items[5].NMatchedFocal = 4, 3
 	items[5].Classification.Reason = ptr(dif.ReasonTooFewCandidates)
 	items[5].Classification.Class = nil
+	e.Comparisons[0].Summary = dif.Summarize(items, e.Plan.Criteria) // of the items as changed here
 	before := e.Comparisons[0].Summary.Classes.Total()
 	x := expose(e).comparisons[0]
 	for i, f := range x.findings {
@@ -125,6 +126,7 @@ func TestItemOfFewMatchedCandidatesIsWithheld(t *testing.T) {
 	c.Items[2].NMatchedReference, c.Items[2].NMatchedFocal = 0, 0
 	c.Items[2].Classification = dif.Classification{Reason: ptr(dif.ReasonNoScoreOverlap)}
 	c.Items[3].NMatchedFocal = 10
+	c.Summary = dif.Summarize(c.Items, e.Plan.Criteria) // of the items as changed here
 	_, rows := readCSV(t, e)
 	for i, want := range []map[string]string{
 		{"n_focal": "73", "n_matched_reference": "withheld", "n_matched_focal": "<10", "p_focal": "", "computed_class": "", "mantel_haenszel.chi_square": "", "reason": dif.ReasonWithheldForPrivacy},
@@ -144,6 +146,16 @@ func TestItemOfFewMatchedCandidatesIsWithheld(t *testing.T) {
 	x := expose(e).comparisons[0]
 	if n := x.Summary.ExpectedByChance.Tests; n != c.Summary.ExpectedByChance.Tests-2 {
 		t.Errorf("%d tests are counted, want two fewer than %d", n, c.Summary.ExpectedByChance.Tests)
+	}
+	// What chance gives is that of the items still shown, each by its own standard error.
+	var shown []dif.Finding
+	for i := range c.Items {
+		if i > 1 {
+			shown = append(shown, c.Items[i])
+		}
+	}
+	if want := dif.Summarize(shown, e.Plan.Criteria).ExpectedByChance; x.Summary.ExpectedByChance != want {
+		t.Errorf("by chance %+v, want %+v", x.Summary.ExpectedByChance, want)
 	}
 	if s := table(t, e); strings.Contains(s, " 6 ") || !strings.Contains(s, "withheld for privacy (2)") {
 		t.Errorf("table:\n%s", s)

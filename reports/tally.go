@@ -48,12 +48,11 @@ func (c *exposedComparison) tally() tally {
 
 func (t tally) letters() int { return t.cMinus + t.cPlus + t.bMinus + t.bPlus + t.a + t.aOpen }
 
-// heads and counts are the outcomes side by side, worst first.
+// counts are the outcomes side by side, worst first; outcomeHeads name them.
 func (t tally) counts() []int {
 	return []int{t.cMinus, t.cPlus, t.bMinus, t.bPlus, t.aOpen, t.a, t.noVerdict}
 }
 
-// outcomeHeads name the entries of counts.
 var outcomeHeads = []struct{ short, long string }{
 	{"C-", "large, harder for focal"},
 	{"C+", "large, easier for focal"},
